@@ -1,0 +1,15 @@
+export type { PointUm, OutlineUm } from './primitives.ts';
+export { MAX_LENGTH_UM, NM_PER_UM } from './primitives.ts';
+export type { Layer, Via } from './layer.ts';
+export type { Net, NetKind, SenseLoop } from './net.ts';
+export type { Strap } from './strap.ts';
+export type { Feed } from './feed.ts';
+export type { Cell, CellLoop, LibraryReference } from './cell.ts';
+export { ORIENTATIONS } from './regulator.ts';
+export type { Orientation, Regulator } from './regulator.ts';
+export type { Block, CurrentMap } from './block.ts';
+export type { Keepout } from './keepout.ts';
+export type { Corner, Mode } from './conditions.ts';
+export type { Limits, LimitSet } from './limits.ts';
+export { FLOORPLAN_FORMAT, FLOORPLAN_VERSION, ITEM_LISTS, floorplanSchema } from './document.ts';
+export type { Floorplan, FloorplanInput, ItemList, ItemOf, Sites } from './document.ts';

@@ -1,0 +1,35 @@
+import { sveltekit } from '@sveltejs/kit/vite';
+import tailwindcss from '@tailwindcss/vite';
+import { defineConfig } from 'vitest/config';
+
+export default defineConfig({
+	plugins: [tailwindcss(), sveltekit()],
+	worker: { format: 'es' },
+	// No data: URLs: the content security policy allows fonts from our own origin only.
+	build: { assetsInlineLimit: 0 },
+	optimizeDeps: { include: ['konva', 'svelte-konva', 'ml-matrix', 'zod'] },
+	server: { watch: { ignored: ['**/.manyweir/**'] } },
+	test: {
+		projects: [
+			{
+				// Pure code: no database, no browser.
+				test: {
+					name: 'unit',
+					include: ['src/**/*.test.ts', 'tests/unit/**/*.test.ts'],
+					exclude: ['src/lib/server/**/*.test.ts']
+				}
+			},
+			{
+				// The server's code on a real, throw-away database.
+				test: {
+					name: 'server',
+					include: ['src/lib/server/**/*.test.ts', 'tests/api/**/*.test.ts']
+				}
+			},
+			{
+				// The solver against numbers from outside the project.
+				test: { name: 'reference', include: ['tests/reference/**/*.test.ts'], testTimeout: 300_000 }
+			}
+		]
+	}
+});
