@@ -14,8 +14,12 @@ export interface NetworkNet {
 	readonly volts: number;
 	/** First node of the net; its nodes are firstNode .. firstNode + nodeCount - 1. */
 	readonly firstNode: number;
+	/** 0 for a net that has no straps, or none that are connected to a source. */
 	readonly nodeCount: number;
-	/** Index into `floorplan.layers` of the lowest and the highest layer on which the net has straps. */
+	/**
+	 * Index into `floorplan.layers` of the lowest and the highest layer on which the net has nodes;
+	 * -1 for a net without nodes.
+	 */
 	readonly lowestLayer: number;
 	readonly highestLayer: number;
 }
@@ -30,8 +34,9 @@ export interface NetworkNodes {
 	/** Index into `Network.nets`. Length `count`. */
 	readonly net: Uint16Array;
 	/**
-	 * The ground node that a load or probe at this node sees: the nearest node of the ground net's
-	 * lowest layer, or -1 where the ground is ideal (also for the ground net's own nodes).
+	 * The ground node that a load or probe at this node sees, or -1 where the ground is ideal (also
+	 * for the ground net's own nodes). The model does not define "local ground" further; our reading
+	 * is the nearest node (straight distance, ties: lowest index) of the ground net's lowest layer.
 	 */
 	readonly localGround: Int32Array;
 }
@@ -85,6 +90,34 @@ export interface NetworkLoads {
 	readonly share: Float64Array;
 }
 
+/**
+ * Where the shared slow loops sense (model 4.4): one entry per sense point that counts, in the order
+ * of `floorplan.nets` and their points. A point senses the nearest node of its net's lowest layer.
+ * Points farther than one pitch from every strap there do not fall on the net and are left out,
+ * unless none of the net's points does; then all count.
+ */
+export interface NetworkSenses {
+	readonly count: number;
+	/** Index into `Network.nets`. */
+	readonly net: Uint16Array;
+	readonly node: Int32Array;
+	/** Weight as in the document; a mean divides by the sum over the net's entries. */
+	readonly weight: Float64Array;
+}
+
+/** Straps of two nets whose shapes overlap on one layer: a finding, solved all the same. */
+export interface NetworkShort {
+	/** Id of the layer. */
+	readonly layer: string;
+	/** Ids of the two nets and of their strap patterns, in the order of the document's straps. */
+	readonly nets: readonly [string, string];
+	readonly straps: readonly [string, string];
+	/** How many pairs of single straps of the two patterns overlap. */
+	readonly count: number;
+	/** Middle of the first overlap, um. */
+	readonly atUm: readonly [number, number];
+}
+
 /** Something a person should know about; never a reason not to solve. */
 export interface ModelWarning {
 	readonly code: string;
@@ -110,6 +143,8 @@ export interface Network {
 	readonly feeds: NetworkFeeds;
 	readonly regulators: NetworkRegulators;
 	readonly loads: NetworkLoads;
+	readonly senses: NetworkSenses;
+	readonly shorts: readonly NetworkShort[];
 	/** Nodes that belong to no source and carry nothing, left out of the numbering. */
 	readonly leftOutNodes: number;
 	readonly warnings: readonly ModelWarning[];
@@ -117,4 +152,9 @@ export interface Network {
 
 export type MeshResult =
 	| { readonly status: 'meshed'; readonly network: Network }
+	| { readonly status: 'refused'; readonly problems: readonly ModelProblem[] };
+
+/** Resistances at a corner, ohm, in the order of `Network.resistors`. */
+export type ResistancesResult =
+	| { readonly status: 'scaled'; readonly ohm: Float64Array }
 	| { readonly status: 'refused'; readonly problems: readonly ModelProblem[] };
