@@ -90,21 +90,6 @@ export interface NetworkLoads {
 	readonly share: Float64Array;
 }
 
-/**
- * Where the shared slow loops sense (model 4.4): one entry per sense point that counts, in the order
- * of `floorplan.nets` and their points. A point senses the nearest node of its net's lowest layer.
- * Points farther than one pitch from every strap there do not fall on the net and are left out,
- * unless none of the net's points does; then all count.
- */
-export interface NetworkSenses {
-	readonly count: number;
-	/** Index into `Network.nets`. */
-	readonly net: Uint16Array;
-	readonly node: Int32Array;
-	/** Weight as in the document; a mean divides by the sum over the net's entries. */
-	readonly weight: Float64Array;
-}
-
 /** Straps of two nets whose shapes overlap on one layer: a finding, solved all the same. */
 export interface NetworkShort {
 	/** Id of the layer. */
@@ -143,7 +128,6 @@ export interface Network {
 	readonly feeds: NetworkFeeds;
 	readonly regulators: NetworkRegulators;
 	readonly loads: NetworkLoads;
-	readonly senses: NetworkSenses;
 	readonly shorts: readonly NetworkShort[];
 	/** Nodes that belong to no source and carry nothing, left out of the numbering. */
 	readonly leftOutNodes: number;
