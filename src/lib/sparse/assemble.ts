@@ -1,0 +1,118 @@
+import type { SymmetricMatrix } from './matrix.ts';
+
+/**
+ * Where the edges of a weighted graph go in its matrix: depends on the edges only, so that new
+ * conductances refill the same pattern.
+ */
+export interface AssemblyPlan {
+	readonly n: number;
+	/** End nodes of each edge, as given. Length: number of edges. */
+	readonly from: Int32Array;
+	readonly to: Int32Array;
+	/** Pattern of the matrix, as in `SymmetricMatrix`. */
+	readonly rowStart: Int32Array;
+	readonly column: Int32Array;
+	/** Position in the value array of (from, to) and of (to, from) of each edge. */
+	readonly upperEntry: Int32Array;
+	readonly lowerEntry: Int32Array;
+	/** Position of each diagonal entry. Length n. */
+	readonly diagonalEntry: Int32Array;
+}
+
+/**
+ * Plans the matrix of a graph with n nodes. Parallel edges share an entry; an edge from a node to
+ * itself is refused with a RangeError, as is an end outside 0 .. n - 1.
+ */
+export function planAssembly(n: number, from: Int32Array, to: Int32Array): AssemblyPlan {
+	const edges = from.length;
+	if (to.length !== edges) throw new RangeError(`${edges} edge starts but ${to.length} edge ends`);
+	const entries = 2 * edges + n;
+	// Entry e < edges is (from, to), e < 2 edges is (to, from), the rest is the diagonal.
+	const entryRow = new Int32Array(entries);
+	const entryColumn = new Int32Array(entries);
+	for (let e = 0; e < edges; e++) {
+		const i = from[e];
+		const j = to[e];
+		if (!(i >= 0 && i < n && j >= 0 && j < n && i !== j)) {
+			throw new RangeError(`edge ${e} joins ${i} and ${j}, expected two nodes of 0 to ${n - 1}`);
+		}
+		entryRow[e] = i;
+		entryColumn[e] = j;
+		entryRow[edges + e] = j;
+		entryColumn[edges + e] = i;
+	}
+	for (let i = 0; i < n; i++) {
+		entryRow[2 * edges + i] = i;
+		entryColumn[2 * edges + i] = i;
+	}
+	// Two stable counting sorts, by column and then by row, leave each row's columns increasing.
+	const byColumn = countingSort(entryColumn, n);
+	const byRow = countingSort(entryRow, n, byColumn);
+
+	const rowStart = new Int32Array(n + 1);
+	const column = new Int32Array(entries);
+	const position = new Int32Array(entries);
+	let stored = 0;
+	let row = -1;
+	for (let k = 0; k < entries; k++) {
+		const e = byRow[k];
+		while (row < entryRow[e]) rowStart[++row] = stored;
+		if (stored > rowStart[row] && column[stored - 1] === entryColumn[e]) {
+			position[e] = stored - 1;
+		} else {
+			column[stored] = entryColumn[e];
+			position[e] = stored++;
+		}
+	}
+	while (row < n) rowStart[++row] = stored;
+	return {
+		n,
+		from,
+		to,
+		rowStart,
+		column: column.slice(0, stored),
+		upperEntry: position.slice(0, edges),
+		lowerEntry: position.slice(edges, 2 * edges),
+		diagonalEntry: position.slice(2 * edges)
+	};
+}
+
+/** Stable order of `0 .. keys.length - 1` (or of `items`) by their keys below `keyCount`. */
+function countingSort(keys: Int32Array, keyCount: number, items?: Int32Array): Int32Array {
+	const next = new Int32Array(keyCount + 1);
+	for (let e = 0; e < keys.length; e++) next[keys[e] + 1]++;
+	for (let key = 0; key < keyCount; key++) next[key + 1] += next[key];
+	const sorted = new Int32Array(keys.length);
+	for (let k = 0; k < keys.length; k++) {
+		const e = items ? items[k] : k;
+		sorted[next[keys[e]]++] = e;
+	}
+	return sorted;
+}
+
+/**
+ * The weighted graph Laplacian plus a diagonal: the nodal matrix of a resistor network whose edges
+ * have the given conductances and whose nodes are tied to sources by `tie`. Lengths: edges; n.
+ */
+export function assembleLaplacian(
+	plan: AssemblyPlan,
+	conductance: Float64Array,
+	tie: Float64Array
+): SymmetricMatrix {
+	const { n, from, to, rowStart, column, upperEntry, lowerEntry, diagonalEntry } = plan;
+	if (conductance.length !== from.length || tie.length !== n) {
+		throw new RangeError(
+			`${conductance.length} conductances and ${tie.length} ties, expected ${from.length} and ${n}`
+		);
+	}
+	const value = new Float64Array(column.length);
+	for (let i = 0; i < n; i++) value[diagonalEntry[i]] = tie[i];
+	for (let e = 0; e < from.length; e++) {
+		const g = conductance[e];
+		value[upperEntry[e]] -= g;
+		value[lowerEntry[e]] -= g;
+		value[diagonalEntry[from[e]]] += g;
+		value[diagonalEntry[to[e]]] += g;
+	}
+	return { n, rowStart, column, value };
+}
