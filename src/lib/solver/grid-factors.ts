@@ -1,0 +1,234 @@
+import type { Network } from '#lib/mesh/index.ts';
+import {
+	analyse,
+	assembleLaplacian,
+	factorise,
+	orderNestedDissection,
+	planAssembly,
+	solveWith,
+	type AssemblyPlan,
+	type CholeskyFactor,
+	type SymbolicFactor
+} from '#lib/sparse/index.ts';
+import { heldNodes, type Circuit } from './circuit.ts';
+
+/** The unknown voltages of one net. Held nodes are none: their columns go to the right-hand side. */
+interface NetPattern {
+	/** Free node -> node of the network. */
+	readonly node: Int32Array;
+	/** Resistors between two free nodes, in the order of the plan's edges. */
+	readonly inner: Int32Array;
+	/** Resistors from a free node to a held one, and that free node. */
+	readonly border: Int32Array;
+	readonly borderFree: Int32Array;
+	readonly plan: AssemblyPlan;
+	/** Order and pattern of the factor, made with the first factor. */
+	symbolic: SymbolicFactor | null;
+}
+
+/** What depends on the network alone: analyses are kept here for every mode and corner. */
+export interface GridPattern {
+	readonly network: Network;
+	readonly nets: readonly NetPattern[];
+	/** Node of the network -> free node of its net, -1 where held. */
+	readonly freeOf: Int32Array;
+	/** Connected part of every node: two nodes with one number are joined by resistors. */
+	readonly part: Int32Array;
+}
+
+/** One column of a net's inverse, read at nodes of the network. */
+export interface PortColumn {
+	at(node: number): number;
+}
+
+/** The factors of one corner, shared by its modes. */
+export interface GridFactors {
+	readonly part: Int32Array;
+	/**
+	 * Writes the voltages of one net under the currents `right` (per node of the network) into
+	 * `answer`; held nodes get 0, other nets are left alone.
+	 */
+	solve(net: number, right: Float64Array, answer: Float64Array): void;
+	/** The net's answer to 1 A at a node. Kept, at the net's ports only. */
+	column(net: number, node: number): PortColumn;
+}
+
+export type FactorOutcome =
+	| { readonly status: 'factored'; readonly grid: GridFactors }
+	/** A part of a net that nothing ties to a source, at one of its nodes. */
+	| { readonly status: 'floating'; readonly node: number }
+	/** The factor of a net would not fit into memory. */
+	| {
+			readonly status: 'too-large';
+			readonly net: number;
+			readonly bytes: number;
+			readonly limitBytes: number;
+	  };
+
+/** Largest factor of one net that is tried: an array buffer's length that every engine still grants. */
+const FACTOR_LIMIT_BYTES = 4 * 1024 ** 3;
+
+/** Connected parts by union-find with path halving. */
+function connectedParts(network: Network): Int32Array {
+	const part = Int32Array.from({ length: network.nodes.count }, (_, node) => node);
+	function root(node: number): number {
+		while (part[node] !== node) {
+			part[node] = part[part[node]];
+			node = part[node];
+		}
+		return node;
+	}
+	const { count, from, to } = network.resistors;
+	for (let r = 0; r < count; r++) {
+		const a = root(from[r]);
+		const b = root(to[r]);
+		if (a !== b) part[Math.max(a, b)] = Math.min(a, b);
+	}
+	return part.map((_, node) => root(node));
+}
+
+/** The patterns of all nets: what `factorGrid` needs for any mode and corner. */
+export function gridPattern(network: Network): GridPattern {
+	const { nodes, resistors } = network;
+	const held = heldNodes(network);
+	const freeOf = new Int32Array(nodes.count).fill(-1);
+	const freeNodes = network.nets.map(({ firstNode, nodeCount }) => {
+		const free: number[] = [];
+		for (let node = firstNode; node < firstNode + nodeCount; node++) {
+			if (held[node] === 1) continue;
+			freeOf[node] = free.length;
+			free.push(node);
+		}
+		return Int32Array.from(free);
+	});
+	const inner: number[][] = network.nets.map(() => []);
+	const border: number[][] = network.nets.map(() => []);
+	for (let r = 0; r < resistors.count; r++) {
+		const ends = held[resistors.from[r]] + held[resistors.to[r]];
+		const net = nodes.net[resistors.from[r]];
+		if (ends === 0) inner[net].push(r);
+		else if (ends === 1) border[net].push(r);
+	}
+	const nets = network.nets.map((_, net): NetPattern => ({
+		node: freeNodes[net],
+		inner: Int32Array.from(inner[net]),
+		border: Int32Array.from(border[net]),
+		borderFree: Int32Array.from(border[net], (r) =>
+			Math.max(freeOf[resistors.from[r]], freeOf[resistors.to[r]])
+		),
+		plan: planAssembly(
+			freeNodes[net].length,
+			Int32Array.from(inner[net], (r) => freeOf[resistors.from[r]]),
+			Int32Array.from(inner[net], (r) => freeOf[resistors.to[r]])
+		),
+		symbolic: null
+	}));
+	return { network, nets, freeOf, part: connectedParts(network) };
+}
+
+/**
+ * What ties every node to a source, S: feeds behind a resistance, and 1 / outputOhm of every enabled
+ * regulator at its output, as if all were regulating.
+ */
+function sourceTies(circuit: Circuit): Float64Array {
+	const { feeds, regulators } = circuit;
+	const ties = new Float64Array(circuit.network.nodes.count);
+	for (let f = 0; f < feeds.count; f++) {
+		if (feeds.seriesOhm[f] > 0) ties[feeds.node[f]] += 1 / feeds.seriesOhm[f];
+	}
+	for (let k = 0; k < regulators.count; k++) {
+		ties[regulators.outputNode[k]] += 1 / regulators.outputOhm[k];
+	}
+	return ties;
+}
+
+/** Factors every net of a corner; enabled regulators count as regulating (see `createPortSolver`). */
+export function factorGrid(pattern: GridPattern, circuit: Circuit): FactorOutcome {
+	const { network, freeOf, part } = pattern;
+	const ties = sourceTies(circuit);
+	const factors: (CholeskyFactor | null)[] = [];
+	for (const [index, net] of pattern.nets.entries()) {
+		if (net.node.length === 0) {
+			factors.push(null);
+			continue;
+		}
+		const conductance = Float64Array.from(net.inner, (r) => 1 / circuit.ohm[r]);
+		const tie = Float64Array.from(net.node, (node) => ties[node]);
+		net.border.forEach((r, index) => (tie[net.borderFree[index]] += 1 / circuit.ohm[r]));
+		const matrix = assembleLaplacian(net.plan, conductance, tie);
+		if (net.symbolic === null) {
+			const x = Float64Array.from(net.node, (node) => network.nodes.xNm[node]);
+			const y = Float64Array.from(net.node, (node) => network.nodes.yNm[node]);
+			net.symbolic = analyse(matrix, orderNestedDissection(matrix, x, y));
+		}
+		const outcome = factorise(net.symbolic, matrix, FACTOR_LIMIT_BYTES);
+		if (outcome.status === 'too-large') {
+			return { ...outcome, net: index };
+		}
+		if (outcome.status === 'not-positive-definite') {
+			return { status: 'floating', node: net.node[outcome.row] };
+		}
+		factors.push(outcome.factor);
+	}
+	return { status: 'factored', grid: gridOf(pattern, factors, portNodes(circuit), freeOf, part) };
+}
+
+/** Nodes at which columns are read: pins of the enabled regulators and points of the loops. */
+function portNodes(circuit: Circuit): number[][] {
+	const { network, regulators, senses } = circuit;
+	const ports = network.nets.map(() => new Set<number>());
+	const add = (node: number) => {
+		if (node >= 0) ports[network.nodes.net[node]].add(node);
+	};
+	regulators.outputNode.forEach(add);
+	regulators.inputNode.forEach(add);
+	for (const sense of senses) sense.node.forEach(add);
+	return ports.map((nodes) => [...nodes]);
+}
+
+function gridOf(
+	pattern: GridPattern,
+	factors: readonly (CholeskyFactor | null)[],
+	ports: readonly number[][],
+	freeOf: Int32Array,
+	part: Int32Array
+): GridFactors {
+	const columns = new Map<number, PortColumn>();
+	const work = pattern.nets.map((net) => ({
+		right: new Float64Array(net.node.length),
+		answer: new Float64Array(net.node.length)
+	}));
+
+	function solve(net: number, right: Float64Array, answer: Float64Array): void {
+		const { firstNode, nodeCount } = pattern.network.nets[net];
+		answer.fill(0, firstNode, firstNode + nodeCount);
+		const factor = factors[net];
+		if (factor === null) return;
+		const { node } = pattern.nets[net];
+		const local = work[net];
+		for (let i = 0; i < node.length; i++) local.right[i] = right[node[i]];
+		solveWith(factor, local.right, local.answer);
+		for (let i = 0; i < node.length; i++) answer[node[i]] = local.answer[i];
+	}
+
+	function column(net: number, node: number): PortColumn {
+		const kept = columns.get(node);
+		if (kept !== undefined) return kept;
+		const values = new Map<number, number>();
+		const factor = factors[net];
+		if (factor !== null && freeOf[node] >= 0) {
+			const local = work[net];
+			local.right.fill(0);
+			local.right[freeOf[node]] = 1;
+			solveWith(factor, local.right, local.answer);
+			for (const port of ports[net]) {
+				if (freeOf[port] >= 0) values.set(port, local.answer[freeOf[port]]);
+			}
+		}
+		const made: PortColumn = { at: (port) => values.get(port) ?? 0 };
+		columns.set(node, made);
+		return made;
+	}
+
+	return { part, solve, column };
+}
