@@ -22,3 +22,8 @@ export type {
 } from './schema.ts';
 export { decodeDropMap, encodeDropMap } from './drop-map.ts';
 export type { DropMap } from './drop-map.ts';
+export { buildDropMap } from './rasterise.ts';
+export { buildResult } from './build-result.ts';
+export type { ResultContext } from './build-result.ts';
+export { blackFactor } from './metal-load.ts';
+export { nodesCsv } from './nodes-csv.ts';
