@@ -1,5 +1,12 @@
 import { z } from 'zod';
-import { idSchema, lengthUmSchema, nameSchema, nonNegativeSchema, pointUmSchema, positiveSchema } from './primitives.ts';
+import {
+	idSchema,
+	lengthUmSchema,
+	nameSchema,
+	nonNegativeSchema,
+	pointUmSchema,
+	positiveSchema
+} from './primitives.ts';
 
 /** Small-signal data for the loop check at the solved current. */
 export const cellLoopSchema = z.strictObject({

@@ -1,5 +1,11 @@
 import { z } from 'zod';
-import { coordinateUmSchema, idSchema, nameSchema, nonNegativeSchema, positiveSchema } from './primitives.ts';
+import {
+	coordinateUmSchema,
+	idSchema,
+	nameSchema,
+	nonNegativeSchema,
+	positiveSchema
+} from './primitives.ts';
 
 /**
  * A bump or pad: an ideal source of the net's volts (input) or 0 V (ground) behind `seriesOhm`.

@@ -1,4 +1,4 @@
-export type { PointUm, OutlineUm } from './primitives.ts';
+export type { OutlineUm, PointUm } from './primitives.ts';
 export { MAX_LENGTH_UM, NM_PER_UM } from './primitives.ts';
 export type { Layer, Via } from './layer.ts';
 export type { Net, NetKind, SenseLoop } from './net.ts';
@@ -11,5 +11,10 @@ export type { Block, CurrentMap } from './block.ts';
 export type { Keepout } from './keepout.ts';
 export type { Corner, Mode } from './conditions.ts';
 export type { Limits, LimitSet } from './limits.ts';
-export { FLOORPLAN_FORMAT, FLOORPLAN_VERSION, ITEM_LISTS, floorplanSchema } from './document.ts';
+export { FLOORPLAN_FORMAT, FLOORPLAN_VERSION, floorplanSchema, ITEM_LISTS } from './document.ts';
 export type { Floorplan, FloorplanInput, ItemList, ItemOf, Sites } from './document.ts';
+export type { Problem } from './problems.ts';
+export { formatProblems } from './problems.ts';
+export type { ParseResult } from './parse.ts';
+export { parseFloorplan, parseFloorplanText } from './parse.ts';
+export { canonicalJson, hashFloorplan, jsonEquals, writeFloorplan } from './canonical.ts';

@@ -1,5 +1,11 @@
 import { z } from 'zod';
-import { idSchema, lengthUmSchema, nameSchema, nonNegativeSchema, positiveSchema } from './primitives.ts';
+import {
+	idSchema,
+	lengthUmSchema,
+	nameSchema,
+	nonNegativeSchema,
+	positiveSchema
+} from './primitives.ts';
 
 /** A metal layer; the document lists them bottom to top. */
 export const layerSchema = z.strictObject({

@@ -1,5 +1,11 @@
 import { z } from 'zod';
-import { coordinateUmSchema, idSchema, nameSchema, nonNegativeSchema, positiveSchema } from './primitives.ts';
+import {
+	coordinateUmSchema,
+	idSchema,
+	nameSchema,
+	nonNegativeSchema,
+	positiveSchema
+} from './primitives.ts';
 
 /**
  * The shared slow loop of a regulated net: one common correction u is added to every set point so

@@ -1,5 +1,11 @@
 import { z } from 'zod';
-import { coordinateUmSchema, idSchema, lengthUmSchema, nameSchema, outlineSchema } from './primitives.ts';
+import {
+	coordinateUmSchema,
+	idSchema,
+	lengthUmSchema,
+	nameSchema,
+	outlineSchema
+} from './primitives.ts';
 
 /**
  * A pattern of parallel straps of one net on one layer. Centre lines stand at

@@ -1,0 +1,216 @@
+import { readFileSync } from 'node:fs';
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import { formatProblems, hashFloorplan, parseFloorplanText, type Floorplan } from '../index.ts';
+import {
+	addItems,
+	applyOperations,
+	changeField,
+	duplicateItems,
+	editSchema,
+	findItem,
+	invertOperations,
+	moveItems,
+	partsTouched,
+	removeItems,
+	setProperty,
+	type EditDraft,
+	type Operation
+} from './index.ts';
+
+function example(): Floorplan {
+	const result = parseFloorplanText(
+		readFileSync('tests/fixtures/floorplan-version-1.json', 'utf8')
+	);
+	if (result.status !== 'parsed') throw new Error(formatProblems(result.problems).join('\n'));
+	return result.floorplan;
+}
+
+function applied(floorplan: Floorplan, operations: readonly Operation[]): Floorplan {
+	const result = applyOperations(floorplan, operations);
+	if (result.status !== 'applied') throw new Error(JSON.stringify(result));
+	return result.floorplan;
+}
+
+const everything = [
+	{ list: 'regulators', id: 'R1' },
+	{ list: 'regulators', id: 'R2' },
+	{ list: 'feeds', id: 'bump' },
+	{ list: 'blocks', id: 'cpu' }
+] as const;
+
+/** One of many actions on whatever the document holds. */
+const actions: fc.Arbitrary<(floorplan: Floorplan) => EditDraft> = fc.oneof(
+	fc.tuple(fc.integer({ min: -9999, max: 9999 }), fc.integer({ min: -9999, max: 9999 })).map(
+		([dx, dy]) =>
+			(f: Floorplan) =>
+				moveItems(f, everything, dx / 1000, dy / 1000)
+	),
+	fc.nat(3).map((k) => (f: Floorplan) => removeItems(f, [everything[k]])),
+	fc.nat(3).map((k) => (f: Floorplan) => duplicateItems(f, [everything[k], everything[0]], 5, 5)),
+	fc.nat(50).map(
+		(mv) => (f: Floorplan) =>
+			changeField(
+				f,
+				'regulators',
+				f.regulators.map(({ id }) => id),
+				'offsetV',
+				mv / 1000
+			)
+	),
+	fc.nat(9).map((k) => (f: Floorplan) => setProperty(f, 'limits', { dropV: k / 100 })),
+	fc.constant((f: Floorplan) => setProperty(f, 'name', undefined))
+);
+
+describe('applyOperations', () => {
+	it('undoing any run of actions gives the first document, redoing the last', () => {
+		fc.assert(
+			fc.property(fc.array(actions, { maxLength: 12 }), (steps) => {
+				const start = example();
+				let floorplan = start;
+				const done: Operation[][] = [];
+				for (const step of steps) {
+					const { operations } = step(floorplan);
+					const result = applyOperations(floorplan, operations);
+					if (result.status !== 'applied') continue;
+					floorplan = result.floorplan;
+					done.push(operations);
+				}
+				const end = hashFloorplan(floorplan);
+				for (const operations of [...done].reverse()) {
+					floorplan = applied(floorplan, invertOperations(operations));
+				}
+				expect(hashFloorplan(floorplan)).toBe(hashFloorplan(start));
+				for (const operations of done) floorplan = applied(floorplan, operations);
+				expect(hashFloorplan(floorplan)).toBe(end);
+			}),
+			{ numRuns: 100 }
+		);
+	});
+
+	it('edits of different objects commute', () => {
+		const start = example();
+		const move = moveItems(start, [everything[0]], 5, 0).operations;
+		const other = changeField(start, 'regulators', ['R2'], 'offsetV', 0.01).operations;
+		expect(hashFloorplan(applied(applied(start, move), other))).toBe(
+			hashFloorplan(applied(applied(start, other), move))
+		);
+	});
+
+	it('10,000 nudges out and back leave no drift (UX-21)', () => {
+		const start = example();
+		let floorplan = start;
+		for (const step of [0.001, -0.001]) {
+			for (let k = 0; k < 5000; k++) {
+				floorplan = applied(
+					floorplan,
+					moveItems(floorplan, [everything[0]], step, step).operations
+				);
+			}
+		}
+		expect(hashFloorplan(floorplan)).toBe(hashFloorplan(start));
+	});
+
+	it('items that are not touched keep their identity', () => {
+		const start = example();
+		const next = applied(start, moveItems(start, [everything[0]], 5, 5).operations);
+		expect(next.blocks).toBe(start.blocks);
+		expect(next.regulators[1]).toBe(start.regulators[1]);
+		expect(start.regulators[0].xUm).toBe(40);
+	});
+
+	it('a field that somebody else has changed is a conflict with both values', () => {
+		const start = example();
+		const mine = changeField(start, 'regulators', ['R1'], 'offsetV', 0.001).operations;
+		const theirs = applied(
+			start,
+			changeField(start, 'regulators', ['R1'], 'offsetV', 0.002).operations
+		);
+		expect(applyOperations(theirs, mine)).toEqual({
+			status: 'conflict',
+			conflicts: [
+				{
+					operation: 0,
+					list: 'regulators',
+					id: 'R1',
+					field: 'offsetV',
+					mine: 0.001,
+					theirs: 0.002,
+					reason: 'changed'
+				}
+			]
+		});
+	});
+
+	it('removing what somebody changed, changing what is gone, adding a taken id are conflicts', () => {
+		const start = example();
+		const removal = removeItems(start, [everything[0]]).operations;
+		const changed = applied(start, moveItems(start, [everything[0]], 5, 0).operations);
+		const gone = applied(start, removal);
+		const twin = addItems(start, 'regulators', [start.regulators[0]]).operations;
+		const move = moveItems(start, [everything[0]], 5, 0).operations;
+		const reasons = [
+			applyOperations(changed, removal),
+			applyOperations(gone, move),
+			applyOperations(start, twin)
+		].map((result) => result.status === 'conflict' && result.conflicts[0].reason);
+		expect(reasons).toEqual(['changed', 'gone', 'taken']);
+	});
+
+	it('refuses what the format refuses, with the path, and changes nothing', () => {
+		const start = example();
+		expect(
+			applyOperations(start, changeField(start, 'cells', ['weir'], 'maxA', -1).operations)
+		).toMatchObject({
+			status: 'refused',
+			problems: [{ path: 'cells[0] (weir).maxA' }]
+		});
+		expect(
+			applyOperations(start, removeItems(start, [{ list: 'cells', id: 'weir' }]).operations)
+		).toMatchObject({
+			status: 'refused',
+			problems: [{ path: 'regulators[0] (R1).cell' }, { path: 'regulators[1] (R2).cell' }]
+		});
+		expect(
+			applyOperations(start, changeField(start, 'regulators', ['R1'], 'colour', 'red').operations)
+		).toMatchObject({
+			status: 'refused',
+			problems: [{ path: 'regulators[0] (R1).colour' }]
+		});
+	});
+
+	it('operations survive a journey as JSON', () => {
+		const start = example();
+		const edit = {
+			id: '0b9ad2ba-33c8-4e5e-9c9d-35a7a0b0f3a1',
+			...moveItems(start, everything, 1, 2)
+		};
+		const received = editSchema.parse(JSON.parse(JSON.stringify(edit)));
+		expect(hashFloorplan(applied(start, received.operations))).toBe(
+			hashFloorplan(applied(start, edit.operations))
+		);
+		expect(partsTouched(received.operations)).toEqual(new Set(['regulators', 'feeds', 'blocks']));
+	});
+});
+
+describe('actions', () => {
+	it('a fixed regulator is neither moved nor removed', () => {
+		const start = applied(
+			example(),
+			changeField(example(), 'regulators', ['R1'], 'fixed', true).operations
+		);
+		expect(moveItems(start, [everything[0]], 5, 5).operations).toEqual([]);
+		expect(removeItems(start, [everything[0]]).operations).toEqual([]);
+	});
+
+	it('copies get ids of their own and stand apart from their originals', () => {
+		const start = example();
+		const first = duplicateItems(start, [everything[0]], 5, 5);
+		const second = duplicateItems(applied(start, first.operations), [everything[0]], 10, 10);
+		expect([...first.copies, ...second.copies].map(({ id }) => id)).toEqual(['R1_2', 'R1_3']);
+		expect(findItem(applied(start, first.operations), 'regulators', 'R1_2')).toMatchObject({
+			xUm: 45,
+			yUm: 45
+		});
+	});
+});
