@@ -11,7 +11,7 @@ import {
 import type { GridFactors } from './grid-factors.ts';
 import { solveLinearised } from './linearised.ts';
 import { createPortSolver, LEAK_FRACTION, type PortSolver, type Step } from './port-solver.ts';
-import { isFlat, nextPiece } from './regulator-law.ts';
+import { isFlat, nextPiece, PIECE_REGULATING } from './regulator-law.ts';
 
 /** Where the iteration aims, and what it accepts where rounding stops it, relative to the load. */
 export const TARGET_RELATIVE = 1e-12;
@@ -80,9 +80,12 @@ function loopTargets(
 	});
 }
 
+/** Where a step meets the first border, and which unit's piece or loop's end changes there. */
 interface Border {
 	readonly t: number;
-	readonly apply: () => void;
+	readonly list: 'piece' | 'loop';
+	readonly index: number;
+	readonly value: number;
 }
 
 /**
@@ -111,7 +114,7 @@ function firstBorder(
 			0
 		);
 		if (next !== null && (best === null || next.t < best.t)) {
-			best = { t: next.t, apply: () => (piece[k] = next.piece) };
+			best = { t: next.t, list: 'piece', index: k, value: next.piece };
 		}
 	}
 	const errorBefore = senseErrors(circuit, from.voltage);
@@ -126,7 +129,9 @@ function firstBorder(
 			const found = target >= rangeV ? 1 : target <= -rangeV ? -1 : 0;
 			if (found === loop[s]) continue;
 			const t = borders[index];
-			if (best === null || t < best.t) best = { t, apply: () => (loop[s] = found) };
+			if (best === null || t < best.t) {
+				best = { t, list: 'loop', index: s, value: found };
+			}
 			break;
 		}
 	});
@@ -152,7 +157,8 @@ export function solveNewton(
 	let unknowns = start;
 	let evaluation = evaluate(circuit, unknowns);
 	let best = { unknowns, evaluation };
-	let piece = Uint8Array.from(evaluation.piece);
+	// Nominal volts lie on a border of the law; the first step takes every unit for regulating.
+	let piece = new Uint8Array(circuit.regulators.count).fill(PIECE_REGULATING);
 	let loop = Int8Array.from(evaluation.loop);
 	const seen = new Set<string>();
 	let pivoting = options.pivotOnly === true;
@@ -222,13 +228,14 @@ export function solveNewton(
 				trial = moved(unknowns, step, t);
 				next = evaluate(circuit, trial);
 			}
-			if (border !== null && !halved) border.apply();
 			unknowns = trial;
 			evaluation = next;
 			if (!pivoting) {
 				piece = Uint8Array.from(evaluation.piece);
 				loop = Int8Array.from(evaluation.loop);
-				if (border !== null && !halved) border.apply();
+			}
+			if (border !== null && !halved) {
+				(border.list === 'piece' ? piece : loop)[border.index] = border.value;
 			}
 		} else {
 			let t = 1;
