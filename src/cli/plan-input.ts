@@ -42,6 +42,11 @@ function fileProblem(error: unknown): string {
 	return `cannot be read: ${reasonOf(error)} (expected a floorplan file)`;
 }
 
+/** The line for a file that an option names and that cannot be written. */
+export function writeProblem(option: string, path: string, error: unknown): string {
+	return `${option}: ${path} cannot be written: ${reasonOf(error)} (expected a writable file)`;
+}
+
 /** Reads and parses a floorplan file. */
 export async function readPlan(path: string): Promise<PlanRead> {
 	let text: string;

@@ -1,7 +1,6 @@
-/** Closed intervals along a line: sorted, disjoint, each longer than 0. */
-export type Interval = readonly [start: number, end: number];
+import type { Interval } from '#lib/geometry/index.ts';
 
-/** What lies in both lists. */
+/** What lies in both lists; lists are sorted and disjoint. */
 export function intersectIntervals(a: readonly Interval[], b: readonly Interval[]): Interval[] {
 	const both: Interval[] = [];
 	let i = 0;

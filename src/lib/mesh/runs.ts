@@ -1,7 +1,7 @@
 import { boundsOf, clipLineToPolygon } from '#lib/geometry/index.ts';
-import type { Bounds, Outline } from '#lib/geometry/index.ts';
+import type { Bounds, Interval, Outline } from '#lib/geometry/index.ts';
 import { MAX_RUNS } from './constants.ts';
-import { intersectIntervals, subtractIntervals, type Interval } from './intervals.ts';
+import { intersectIntervals, subtractIntervals } from './intervals.ts';
 import type { ModelProblem, ModelWarning } from './network.ts';
 import { outlineToNm, type PlanIndex, type StrapPattern } from './plan-index.ts';
 

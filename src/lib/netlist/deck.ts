@@ -1,0 +1,129 @@
+import type { Corner, Floorplan, Mode } from '#lib/floorplan/index.ts';
+import { resistancesAt, type ModelProblem, type Network } from '#lib/mesh/index.ts';
+import { loadLines } from './loads.ts';
+import { nodeNames, safeIds } from './names.ts';
+import { regulatorLines, senseLines } from './regulators.ts';
+
+export type DeckResult =
+	| { readonly status: 'written'; readonly deck: string }
+	| { readonly status: 'refused'; readonly problems: readonly ModelProblem[] };
+
+/** Volts of a feed's ideal source in a mode. */
+function feedVolts(floorplan: Floorplan, netId: string, mode: Mode): number {
+	const net = floorplan.nets.find((candidate) => candidate.id === netId);
+	if (net === undefined || net.kind === 'ground') return 0;
+	return mode.inputVolts?.[netId] ?? net.volts;
+}
+
+/** Feeds: an ideal source behind a resistor, or alone where it holds its node. */
+function feedLines(
+	floorplan: Floorplan,
+	network: Network,
+	mode: Mode,
+	names: readonly string[]
+): string[] {
+	const ids = safeIds(floorplan.feeds);
+	const holder = new Map<number, string>();
+	return floorplan.feeds.flatMap((feed, f) => {
+		const node = network.feeds.node[f];
+		const comment = `* feed ${feed.id}`;
+		if (node < 0) return [`${comment}: joins no strap`];
+		const volts = feedVolts(floorplan, feed.net, mode);
+		if (feed.seriesOhm > 0) {
+			return [
+				comment,
+				`vf_${ids[f]} f_${ids[f]} 0 ${volts}`,
+				`rf_${ids[f]} f_${ids[f]} ${names[node]} ${feed.seriesOhm}`
+			];
+		}
+		const held = holder.get(node);
+		if (held !== undefined) return [`${comment}: its node is already held by feed ${held}`];
+		holder.set(node, feed.id);
+		return [comment, `vf_${ids[f]} ${names[node]} 0 ${volts}`];
+	});
+}
+
+function resistorLines(network: Network, ohm: Float64Array, names: readonly string[]): string[] {
+	const { count, from, to } = network.resistors;
+	const lines = new Array<string>(count);
+	for (let r = 0; r < count; r++) {
+		lines[r] = `r${r + 1} ${names[from[r]]} ${names[to[r]]} ${ohm[r]}`;
+	}
+	return lines;
+}
+
+/**
+ * Where a simulator starts: nominal volts on every node that carries a load or a pin. Loads follow
+ * their voltage, so that from 0 V a simulator would find the collapsed answer first.
+ */
+function startLines(
+	floorplan: Floorplan,
+	network: Network,
+	mode: Mode,
+	names: readonly string[]
+): string[] {
+	const { loads, regulators, nodes, nets } = network;
+	const wanted = new Set<number>();
+	for (let load = 0; load < loads.count; load++) wanted.add(loads.node[load]);
+	for (const node of regulators.outputNode) if (node >= 0) wanted.add(node);
+	for (const node of regulators.inputNode) if (node >= 0) wanted.add(node);
+	const volts = nets.map((net) =>
+		net.kind === 'input' ? feedVolts(floorplan, net.id, mode) : net.volts
+	);
+	return [...wanted]
+		.sort((a, b) => a - b)
+		.map((node) => `.nodeset v(${names[node]})=${volts[nodes.net[node]]}`);
+}
+
+/** One line of text: what people typed may hold line breaks. */
+function oneLine(text: string): string {
+	return text.replace(/\s+/g, ' ').trim();
+}
+
+function headLines(floorplan: Floorplan, mode: Mode, corner: Corner): string[] {
+	const nets = safeIds(floorplan.nets);
+	const layers = safeIds(floorplan.layers);
+	return [
+		`Manyweir: ${oneLine(floorplan.name ?? 'floorplan')}, mode ${mode.id}, corner ${corner.id}`,
+		'* Early estimate of static drop from a drawn grid: confirm with extracted data before manufacture.',
+		'* Nodes: n_<net>_<layer>_<x nm>_<y nm>, m before a coordinate is a minus; node 0 is the ideal ground.',
+		...floorplan.nets.map(
+			(net, n) => `* net ${net.id} is ${nets[n]}: ${net.kind}, ${net.volts} V nominal`
+		),
+		...floorplan.layers.map((layer, l) => `* layer ${layer.id} is ${layers[l]}`),
+		'* Regulators: br_<id> between input and output pin, its current through vr_<id>.'
+	];
+}
+
+/**
+ * The network in one mode and corner as an open SPICE-syntax deck that a general simulator runs
+ * unchanged in batch mode. Refused where the corner has no resistances (see `resistancesAt`).
+ */
+export function writeDeck(
+	floorplan: Floorplan,
+	network: Network,
+	{ mode, corner }: { readonly mode: Mode; readonly corner: Corner }
+): DeckResult {
+	const scaled = resistancesAt(network, floorplan, corner);
+	if (scaled.status === 'refused') return scaled;
+	const { names, comments } = nodeNames(floorplan, network);
+	const loops = senseLines(floorplan, network, names);
+	const sections = [
+		headLines(floorplan, mode, corner),
+		comments,
+		['* Straps and vias'],
+		resistorLines(network, scaled.ohm, names),
+		['* Feeds'],
+		feedLines(floorplan, network, mode, names),
+		['* Regulators'],
+		regulatorLines(floorplan, network, corner, names, loops.correctionNode),
+		loops.lines,
+		['* Loads'],
+		loadLines(floorplan, network, mode, corner, names),
+		['* Start of the search for the operating point'],
+		startLines(floorplan, network, mode, names),
+		['.options reltol=1e-9 abstol=1e-12 vntol=1e-10 gmin=1e-15 itl1=500 numdgt=15', '.op', '.end']
+	];
+	const deck = sections.map((lines) => lines.map((line) => `${line}\n`).join('')).join('');
+	return { status: 'written', deck };
+}

@@ -1,0 +1,3 @@
+export { writeDeck } from './deck.ts';
+export type { DeckResult } from './deck.ts';
+export { nodeNames } from './names.ts';
