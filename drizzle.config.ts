@@ -4,6 +4,7 @@ export default defineConfig({
 	dialect: 'postgresql',
 	schema: './src/lib/server/db/schema/index.ts',
 	out: './drizzle',
+	casing: 'snake_case',
 	strict: true,
 	verbose: true
 });

@@ -1,0 +1,121 @@
+import { z } from 'zod';
+import { resultFileSchema, type ResultFile } from '#lib/results/index.ts';
+import { jobSchema, type Job } from './jobs.ts';
+import {
+	editAcceptedSchema,
+	editsPageSchema,
+	floorplanDetailSchema,
+	type EditAccepted,
+	type EditsPage,
+	type FloorplanDetail,
+	type SubmitEdit
+} from './floorplans.ts';
+import { problemSchema, type ProblemDocument } from './problem.ts';
+import {
+	floorplanSummarySchema,
+	projectListSchema,
+	projectSchema,
+	type FloorplanSummary,
+	type Project,
+	type ProjectSummary
+} from './projects.ts';
+import type { ProjectRole } from './roles.ts';
+import { solvesSchema, type Solves } from './solves.ts';
+
+/** The server answered with a problem. */
+export class ApiError extends Error {
+	override readonly name = 'ApiError';
+	readonly problem: ProblemDocument;
+
+	constructor(problem: ProblemDocument) {
+		super(problem.detail || problem.title);
+		this.problem = problem;
+	}
+}
+
+type Fetch = typeof fetch;
+
+async function request(
+	fetcher: Fetch,
+	method: string,
+	path: string,
+	body?: unknown
+): Promise<Response> {
+	const response = await fetcher(`/api/v1${path}`, {
+		method,
+		...(body === undefined
+			? {}
+			: { headers: { 'content-type': 'application/json' }, body: JSON.stringify(body) })
+	});
+	if (response.ok) return response;
+	const data: unknown = await response.json().catch(() => null);
+	const problem = problemSchema.safeParse(data);
+	throw new ApiError(
+		problem.success
+			? problem.data
+			: {
+					type: 'about:blank',
+					title: 'The server did not answer as expected',
+					status: response.status,
+					detail: `The server answered with status ${response.status}. Try again in a moment.`,
+					instance: ''
+				}
+	);
+}
+
+async function requestJson<T>(
+	fetcher: Fetch,
+	method: string,
+	path: string,
+	schema: z.ZodType<T>,
+	body?: unknown
+): Promise<T> {
+	const response = await request(fetcher, method, path, body);
+	return schema.parse(await response.json());
+}
+
+/** The product's own API, one function per operation. Each throws an ApiError with the problem. */
+export function createClient(fetcher: Fetch) {
+	const floorplan = (id: string) => `/floorplans/${encodeURIComponent(id)}`;
+	const project = (id: string) => `/projects/${encodeURIComponent(id)}`;
+	return {
+		listProjects: async (): Promise<ProjectSummary[]> =>
+			(await requestJson(fetcher, 'GET', '/projects', projectListSchema)).projects,
+		getProject: (id: string): Promise<Project> =>
+			requestJson(fetcher, 'GET', project(id), projectSchema),
+		createProject: (name: string): Promise<Project> =>
+			requestJson(fetcher, 'POST', '/projects', projectSchema, { name }),
+		setMember: async (id: string, userId: string, role: ProjectRole): Promise<void> => {
+			await request(fetcher, 'PUT', `${project(id)}/members/${encodeURIComponent(userId)}`, {
+				role
+			});
+		},
+		removeMember: async (id: string, userId: string): Promise<void> => {
+			await request(fetcher, 'DELETE', `${project(id)}/members/${encodeURIComponent(userId)}`);
+		},
+		createFloorplan: (id: string, name: string, document?: unknown): Promise<FloorplanSummary> =>
+			requestJson(fetcher, 'POST', `${project(id)}/floorplans`, floorplanSummarySchema, {
+				name,
+				document
+			}),
+		getFloorplan: (id: string): Promise<FloorplanDetail> =>
+			requestJson(fetcher, 'GET', floorplan(id), floorplanDetailSchema),
+		submitEdit: (id: string, edit: SubmitEdit): Promise<EditAccepted> =>
+			requestJson(fetcher, 'POST', `${floorplan(id)}/edits`, editAcceptedSchema, edit),
+		listEdits: (id: string, after: number): Promise<EditsPage> =>
+			requestJson(fetcher, 'GET', `${floorplan(id)}/edits?after=${after}`, editsPageSchema),
+		getSolves: (id: string): Promise<Solves> =>
+			requestJson(fetcher, 'GET', `${floorplan(id)}/solves`, solvesSchema),
+		requestSolves: (id: string, wanted: { mode?: string; corner?: string }): Promise<Solves> =>
+			requestJson(fetcher, 'POST', `${floorplan(id)}/solves`, solvesSchema, wanted),
+		cancelJob: (id: string): Promise<Job> =>
+			requestJson(fetcher, 'POST', `/jobs/${encodeURIComponent(id)}/cancel`, jobSchema),
+		getResult: (id: string): Promise<ResultFile> =>
+			requestJson(fetcher, 'GET', `/results/${encodeURIComponent(id)}`, resultFileSchema),
+		getMap: async (resultId: string, net: string): Promise<Uint8Array> => {
+			const path = `/results/${encodeURIComponent(resultId)}/maps/${encodeURIComponent(net)}`;
+			return new Uint8Array(await (await request(fetcher, 'GET', path)).arrayBuffer());
+		}
+	};
+}
+export type ApiClient = ReturnType<typeof createClient>;

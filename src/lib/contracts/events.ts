@@ -1,0 +1,19 @@
+import { z } from 'zod';
+import { jobSchema } from './jobs.ts';
+
+/** What a floorplan's event stream carries. */
+export const floorplanEventSchema = z.discriminatedUnion('type', [
+	/** Somebody's edit made this version. */
+	z.object({ type: z.literal('edit'), version: z.int(), by: z.string(), editId: z.uuid() }),
+	/** A job of this floorplan changed. */
+	z.object({ type: z.literal('job'), job: jobSchema }),
+	/** A result was kept. */
+	z.object({
+		type: z.literal('result'),
+		id: z.uuid(),
+		mode: z.string(),
+		corner: z.string(),
+		documentHash: z.string()
+	})
+]);
+export type FloorplanEvent = z.infer<typeof floorplanEventSchema>;

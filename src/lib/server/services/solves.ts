@@ -1,0 +1,166 @@
+import { and, eq, inArray, sql } from 'drizzle-orm';
+import type { z } from 'zod';
+import type { Job, requestSolvesSchema, Solves } from '#lib/contracts/index.ts';
+import type { ResultFile } from '#lib/results/index.ts';
+import { SOLVER_VERSION } from '#lib/solver/index.ts';
+import { requireAccess } from '../access/access.ts';
+import { audit, type Actor } from '../audit.ts';
+import type { Database, Handle } from '../db/client.ts';
+import { floorplans, resultMaps, results } from '../db/schema/index.ts';
+import { cancelJob } from '../jobs/cancel.ts';
+import { enqueue } from '../jobs/enqueue.ts';
+import { findJob, listJobs } from '../jobs/job-rows.ts';
+import { SOLVE_KIND, solveDedupeKey } from '../jobs/solve-kind.ts';
+import { Problem } from '../problem.ts';
+
+/** Solves that one team may have waiting. */
+const MAX_COMBINATIONS = 64;
+
+/**
+ * Kept results and jobs of a floorplan. Of each mode and corner the result of the present document
+ * where there is one, else the newest of the project, which the page then marks as out of date.
+ */
+export async function getSolves(db: Handle, actor: Actor, id: string): Promise<Solves> {
+	const access = await requireAccess(db, actor, 'project.view', { kind: 'floorplan', id });
+	const [{ hash }] = await db
+		.select({ hash: floorplans.hash })
+		.from(floorplans)
+		.where(eq(floorplans.id, id));
+	const solvedHere = sql`(${results.documentHash} = ${hash} or ${results.documentHash} in (
+		select j.input ->> 'documentHash' from jobs j where j.floorplan_id = ${id} and j.state = 'done'))`;
+	const rows = await db
+		.selectDistinctOn([results.mode, results.corner], {
+			id: results.id,
+			mode: results.mode,
+			corner: results.corner,
+			documentHash: results.documentHash,
+			createdAt: results.createdAt
+		})
+		.from(results)
+		.where(
+			and(
+				eq(results.projectId, access.projectId ?? ''),
+				eq(results.solverVersion, SOLVER_VERSION),
+				solvedHere
+			)
+		)
+		.orderBy(
+			results.mode,
+			results.corner,
+			sql`(${results.documentHash} = ${hash}) desc`,
+			sql`${results.createdAt} desc`
+		);
+	return {
+		documentHash: hash,
+		results: rows.map((row) => ({ ...row, createdAt: row.createdAt.toISOString() })),
+		jobs: await listJobs(db, id)
+	};
+}
+
+/** Starts the solves that are asked for and not kept already. */
+export async function requestSolves(
+	db: Database,
+	actor: Actor,
+	id: string,
+	wanted: z.output<typeof requestSolvesSchema>
+): Promise<Solves> {
+	const access = await requireAccess(db, actor, 'solve.run', { kind: 'floorplan', id });
+	const projectId = access.projectId ?? '';
+	await db.transaction(async (tx) => {
+		const [{ hash, document }] = await tx.select().from(floorplans).where(eq(floorplans.id, id));
+		const modes = pick('mode', document.modes, wanted.mode);
+		const corners = pick('corner', document.corners, wanted.corner);
+		const combinations = modes.flatMap((mode) => corners.map((corner) => ({ mode, corner })));
+		if (combinations.length > MAX_COMBINATIONS) {
+			throw new Problem(
+				'invalid',
+				`${combinations.length} modes and corners at once (at most ${MAX_COMBINATIONS}). Ask for one mode or corner.`
+			);
+		}
+		const kept = await tx
+			.select({ mode: results.mode, corner: results.corner })
+			.from(results)
+			.where(
+				and(
+					eq(results.projectId, projectId),
+					eq(results.documentHash, hash),
+					eq(results.solverVersion, SOLVER_VERSION),
+					inArray(results.mode, modes)
+				)
+			);
+		for (const { mode, corner } of combinations) {
+			if (kept.some((one) => one.mode === mode && one.corner === corner)) continue;
+			const input = { projectId, floorplanId: id, documentHash: hash, mode, corner };
+			const job = await enqueue(tx, {
+				kind: SOLVE_KIND,
+				input,
+				dedupeKey: solveDedupeKey(input),
+				teamId: actor.teamId,
+				floorplanId: id,
+				requestedBy: actor.userId
+			});
+			await audit(tx, {
+				teamId: actor.teamId,
+				userId: actor.userId,
+				requestId: actor.requestId,
+				action: 'solve.request',
+				objectKind: 'job',
+				objectId: job.id,
+				detail: { floorplanId: id, mode, corner }
+			});
+		}
+	});
+	return getSolves(db, actor, id);
+}
+
+function pick(what: string, list: readonly { id: string }[], wanted?: string): string[] {
+	const ids = list.map(({ id }) => id);
+	if (wanted === undefined) return ids;
+	if (ids.includes(wanted)) return [wanted];
+	const message = `There is no ${what} "${wanted}" (there are ${ids.join(', ')}).`;
+	throw new Problem('invalid', message, { errors: [{ path: what, message }] });
+}
+
+export async function getJob(db: Handle, actor: Actor, id: string): Promise<Job> {
+	await requireAccess(db, actor, 'project.view', { kind: 'job', id });
+	const job = await findJob(db, id);
+	if (!job) throw new Problem('not-found', 'There is no such job.');
+	return job;
+}
+
+/** Cancels a job; one that has ended stays as it is. */
+export async function cancel(db: Database, actor: Actor, id: string): Promise<Job> {
+	await requireAccess(db, actor, 'solve.run', { kind: 'job', id });
+	await cancelJob(db, id);
+	await audit(db, {
+		teamId: actor.teamId,
+		userId: actor.userId,
+		requestId: actor.requestId,
+		action: 'job.cancel',
+		objectKind: 'job',
+		objectId: id
+	});
+	return getJob(db, actor, id);
+}
+
+export async function getResult(db: Handle, actor: Actor, id: string): Promise<ResultFile> {
+	await requireAccess(db, actor, 'project.view', { kind: 'result', id });
+	const [row] = await db.select({ file: results.file }).from(results).where(eq(results.id, id));
+	return row.file;
+}
+
+/** The drop map of one net, compressed with gzip. */
+export async function getMap(
+	db: Handle,
+	actor: Actor,
+	id: string,
+	net: string
+): Promise<Uint8Array> {
+	await requireAccess(db, actor, 'project.view', { kind: 'result', id });
+	const [row] = await db
+		.select({ gzip: resultMaps.gzip })
+		.from(resultMaps)
+		.where(and(eq(resultMaps.resultId, id), eq(resultMaps.net, net)));
+	if (!row) throw new Problem('not-found', `The result has no map of net ${net}.`);
+	return row.gzip;
+}
