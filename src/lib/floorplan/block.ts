@@ -1,5 +1,11 @@
 import { z } from 'zod';
-import { idSchema, nameSchema, nonNegativeSchema, outlineSchema } from './primitives.ts';
+import {
+	idSchema,
+	nameSchema,
+	nonNegativeSchema,
+	outlineSchema,
+	quantitySchema
+} from './primitives.ts';
 
 /** A current map over the bounding box of the block, row by row from the lower left. */
 export const currentMapSchema = z
@@ -25,7 +31,7 @@ export const blockSchema = z.strictObject({
 	net: idSchema,
 	outline: outlineSchema,
 	/** Current at nominal volts by mode id, A; a mode without an entry draws nothing. */
-	amps: z.record(idSchema, z.number()),
+	amps: z.record(idSchema, quantitySchema),
 	spread: z.union([z.literal('uniform'), currentMapSchema]).default('uniform'),
 	/** I = amps * (v / volts) ^ voltageExponent: 0 constant current, 1 a resistor, -1 constant power. */
 	voltageExponent: z.number().min(-4).max(4).default(0)

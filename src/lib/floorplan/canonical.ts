@@ -31,3 +31,27 @@ export function hashFloorplan(floorplan: Floorplan): string {
 export function writeFloorplan(floorplan: Floorplan): string {
 	return `${JSON.stringify(floorplan, null, '\t')}\n`;
 }
+
+/** How deep values of a document or an edit may be nested; the format itself needs 7. */
+export const MAX_NESTING = 16;
+
+/**
+ * Whether a value is JSON that is safe to walk recursively: finite numbers, no key `__proto__`,
+ * nested at most MAX_NESTING deep. Checked without recursion, so that hostile nesting cannot
+ * exhaust the stack.
+ */
+export function isPlainJson(value: unknown): boolean {
+	const open: { value: unknown; depth: number }[] = [{ value, depth: 0 }];
+	for (let next = open.pop(); next; next = open.pop()) {
+		const { value: one, depth } = next;
+		if (typeof one === 'number') {
+			if (!Number.isFinite(one)) return false;
+		} else if (typeof one === 'object' && one !== null) {
+			if (depth >= MAX_NESTING || Object.hasOwn(one, '__proto__')) return false;
+			for (const field of Object.values(one)) open.push({ value: field, depth: depth + 1 });
+		} else if (one !== null && typeof one !== 'string' && typeof one !== 'boolean') {
+			return false;
+		}
+	}
+	return true;
+}

@@ -14,7 +14,7 @@ export const cellLoopSchema = z.strictObject({
 	gainAtRef: positiveSchema,
 	refA: positiveSchema,
 	/** Gain follows (I / refA) ^ gainExponent. */
-	gainExponent: z.number().default(-0.5),
+	gainExponent: z.number().min(-10).max(10).default(-0.5),
 	internalPolesHz: z.array(positiveSchema).default([]),
 	zerosHz: z.array(positiveSchema).default([]),
 	outputFarad: positiveSchema,

@@ -1,11 +1,17 @@
 import { z } from 'zod';
-import { idSchema, nameSchema, positiveSchema, nonNegativeSchema } from './primitives.ts';
+import {
+	idSchema,
+	nameSchema,
+	positiveSchema,
+	nonNegativeSchema,
+	quantitySchema
+} from './primitives.ts';
 
 /** An operating mode: which blocks draw what (see `Block.amps`), and input volts that differ from nominal. */
 export const modeSchema = z.strictObject({
 	id: idSchema,
 	name: nameSchema.optional(),
-	inputVolts: z.record(idSchema, z.number()).optional()
+	inputVolts: z.record(idSchema, quantitySchema).optional()
 });
 
 /** A corner of temperature, metal and cells. */

@@ -4,7 +4,8 @@ import {
 	lengthUmSchema,
 	nameSchema,
 	nonNegativeSchema,
-	positiveSchema
+	positiveSchema,
+	quantitySchema
 } from './primitives.ts';
 
 /** A metal layer; the document lists them bottom to top. */
@@ -16,9 +17,9 @@ export const layerSchema = z.strictObject({
 	/** Sheet resistance at `refC`, ohm per square. */
 	sheetOhm: positiveSchema,
 	/** Temperature coefficient of resistance, per degree C. */
-	tempCoPerC: z.number().default(0),
+	tempCoPerC: quantitySchema.default(0),
 	/** Temperature at which `sheetOhm` holds, degrees C. */
-	refC: z.number().default(25),
+	refC: quantitySchema.default(25),
 	thicknessUm: lengthUmSchema.optional(),
 	/** Electromigration limit, mA per um of strap width. */
 	maxMaPerUm: positiveSchema.optional(),
@@ -27,7 +28,7 @@ export const layerSchema = z.strictObject({
 	/** Current exponent of Black's equation. */
 	emExponent: positiveSchema.optional(),
 	/** Temperature at which `maxMaPerUm` holds, degrees C. */
-	emRefC: z.number().optional()
+	emRefC: quantitySchema.optional()
 });
 
 /**

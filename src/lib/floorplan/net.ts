@@ -4,7 +4,8 @@ import {
 	idSchema,
 	nameSchema,
 	nonNegativeSchema,
-	positiveSchema
+	positiveSchema,
+	quantitySchema
 } from './primitives.ts';
 
 /**
@@ -31,7 +32,7 @@ export const netSchema = z.strictObject({
 	/** `input` feeds regulators, `regulated` is fed by them, `ground` returns the current. */
 	kind: z.enum(['input', 'regulated', 'ground']),
 	/** Nominal volts. */
-	volts: z.number(),
+	volts: quantitySchema,
 	senseLoop: senseLoopSchema.optional(),
 	/** Whether the net's regulators refer to the ground beside them or to a quiet 0 V. */
 	groundReference: z.enum(['local', 'quiet']).default('local')

@@ -1,4 +1,5 @@
 import { readFileSync } from 'node:fs';
+import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import {
 	formatProblems,
@@ -7,6 +8,7 @@ import {
 	parseFloorplanText,
 	writeFloorplan
 } from './index.ts';
+import { findJsonFault } from './json-text.ts';
 
 const example = readFileSync('tests/fixtures/floorplan-version-1.json', 'utf8');
 
@@ -59,7 +61,7 @@ describe('parseFloorplan', () => {
 			1.00005,
 			'straps[0] (core.M1).pitchUm'
 		],
-		['a missing list', ['straps'], undefined, 'straps: missing (expected array)'],
+		['a missing list', ['straps'], undefined, 'straps: missing (expected a list)'],
 		['a wrong format', ['format'], 'other', 'format: "other" (expected "manyweir-floorplan")'],
 		[
 			'a dangling cell',
@@ -130,20 +132,133 @@ describe('parseFloorplan', () => {
 		expect(lines[20]).toBe('and 5 more');
 	});
 
-	it('a key named __proto__ is an unknown field like any other', () => {
-		const text = example.replace('"format"', '"__proto__": { "polluted": true }, "format"');
-		const result = parseFloorplanText(text);
-		expect(result.status).toBe('refused');
+	it('prints as many problems as asked for', () => {
+		const problems = [1, 2, 3].map((k) => ({ path: `p${k}`, message: 'wrong' }));
+		expect(formatProblems(problems, 2)).toEqual(['p1: wrong', 'p2: wrong', 'and 1 more']);
+	});
+
+	it.each([
+		['the document', '"format"', '"__proto__": { "polluted": true }, "format"', '__proto__'],
+		['a record', '"run": 0.04', '"run": 0.04, "__proto__": 1', 'blocks[0] (cpu).amps.__proto__'],
+		[
+			'an item',
+			'"id": "R1"',
+			'"id": "R1", "__proto__": { "fixed": true }',
+			'regulators[0] (R1).__proto__'
+		]
+	])('a key named __proto__ in %s is an unknown field like any other', (_name, from, to, path) => {
+		const result = parseFloorplanText(example.replace(from, to));
+		expect(result).toMatchObject({ status: 'refused', problems: [{ path }] });
 		expect(Reflect.get({}, 'polluted')).toBeUndefined();
 	});
 
-	it('names line and column of a syntax error and passes over a byte order mark', () => {
-		const broken = parseFloorplanText('{\n  "format": ,\n}');
-		expect(broken).toMatchObject({
+	it('a reserved name is no id, as an item or as a key', () => {
+		expect(problemsOf(withValue(['modes', 0, 'id'], 'constructor'))[0]).toMatch(
+			/^modes\[0\] \(constructor\)\.id: .*reserved/
+		);
+		expect(problemsOf(withValue(['blocks', 0, 'amps'], { toString: 1 }))[0]).toMatch(
+			/^blocks\[0\] \(cpu\)\.amps\.toString: .*reserved/
+		);
+	});
+
+	it('a list beyond its limit is refused as a whole', () => {
+		const corners = Array.from({ length: 100_000 }, () => 0);
+		expect(problemsOf(withValue(['corners'], corners))).toEqual([
+			'corners: 100000 items (expected 1 to 256)'
+		]);
+		expect(problemsOf(withValue(['corners'], []))).toHaveLength(1);
+	});
+
+	it('a huge list of wrong items gives the first problems, not millions', () => {
+		const feeds = Array.from({ length: 100_000 }, () => ({ id: 'f' }));
+		const result = parseFloorplan(withValue(['feeds'], feeds));
+		if (result.status !== 'refused') throw new Error('accepted');
+		expect(result.problems.length).toBeLessThan(1100);
+		expect(result.problems[0].path).toBe('feeds[0] (f).net');
+	});
+
+	it('shows long or deep values in short', () => {
+		let deep: unknown = 0;
+		for (let k = 0; k < 100_000; k++) deep = [deep];
+		expect(problemsOf(withValue(['name'], deep))).toEqual(['name: list of 1 (expected a text)']);
+		const [line] = problemsOf(withValue(['nets', 0, 'kind'], 'x'.repeat(1_000_000)));
+		expect(line.length).toBeLessThan(200);
+	});
+});
+
+describe('parseFloorplanText', () => {
+	it.each<[string, string, string]>([
+		['nothing', ' \n', 'file is empty'],
+		['a missing value', '{\n  "format": ,\n}', 'line 2, column 13: "," where a value should stand'],
+		['a missing end', '{ "name": "x"', 'line 1, column 14: the file ends where "," or "}"'],
+		['an open text', '{ "name": "x', 'line 1, column 13: the file ends inside a text'],
+		['NUL in a text', '{ "name": "a\u0000b" }', 'line 1, column 13: control character 0000'],
+		['a line break in a text', '{ "name": "a\r\nb" }', 'line 1, column 13: control character 000D'],
+		['NaN', '{ "version": NaN }', 'line 1, column 14: "N" where a value'],
+		['a comment', '{\r\n // x\r\n}', 'line 2, column 2: "/" where a key'],
+		['a comma too many', '[1,\n2,\n]', 'line 3, column 1: "]" where a value'],
+		['an unknown escape', '"\\x41"', 'line 1, column 2: an escape that JSON does not know'],
+		['a second document', '{} {}', 'line 1, column 4: "{" after the end of the document'],
+		['a leading zero', '[01]', 'line 1, column 3: "1" where "," or "]"'],
+		['a key twice', '{ "a": 1,\n "a": 2 }', 'line 2, column 2: key "a" stands twice'],
+		['a key twice, once escaped', '{ "a": 1, "\\u0061": 2 }', 'line 1, column 11: key "a"'],
+		['deep nesting', '['.repeat(1_000_000), 'line 1, column 17: nested deeper than 16'],
+		['one long line', `${'['.padEnd(1_000_000)}x`, 'line 1, column 1000001: "x" where a value']
+	])('%s: line and column', (_name, text, expected) => {
+		const result = parseFloorplanText(text);
+		expect(result).toMatchObject({
 			status: 'refused',
-			problems: [{ message: expect.stringMatching(/expected a JSON document/) as string }]
+			problems: [{ path: '', message: expect.stringContaining(expected) as string }]
 		});
+	});
+
+	it('passes over a byte order mark and reads any line ends', () => {
 		expect(parseFloorplanText(`\uFEFF${example}`).status).toBe('parsed');
+		expect(parseFloorplanText(example.replaceAll('\n', '\r\n')).status).toBe('parsed');
+	});
+
+	it('finds a fault where, and only where, the engine finds one', () => {
+		const pieces = fc.constantFrom(
+			...[
+				'{',
+				'}',
+				'[',
+				']',
+				',',
+				':',
+				'"a"',
+				'"b"',
+				'1',
+				'-',
+				'0',
+				'.5',
+				'e3',
+				'true',
+				'null',
+				' '
+			]
+		);
+		fc.assert(
+			fc.property(
+				fc.oneof(
+					fc.json({ maxDepth: 6 }),
+					fc.array(pieces).map((all) => all.join(''))
+				),
+				(text) => {
+					let isJson = true;
+					try {
+						JSON.parse(text);
+					} catch {
+						isJson = false;
+					}
+					const fault = findJsonFault(text);
+					// A key that stands twice is the one thing that the engine lets pass.
+					if (fault?.message.includes('twice')) return;
+					expect(fault === null).toBe(isJson);
+				}
+			),
+			{ numRuns: 500 }
+		);
 	});
 });
 

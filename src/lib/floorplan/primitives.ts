@@ -9,7 +9,9 @@ export const NM_PER_UM = 1000;
 /** Identity of an item, unique within its list: 1 to 64 letters, digits and `_ - . [ ] /`. */
 export const idSchema = z
 	.string()
-	.regex(/^[A-Za-z0-9_\-.[\]/]{1,64}$/, 'expected 1 to 64 letters, digits or _ - . [ ] /');
+	.regex(/^[A-Za-z0-9_\-.[\]/]{1,64}$/, 'expected 1 to 64 letters, digits or _ - . [ ] /')
+	// Ids are keys of objects (a block's amps by mode), where these names mean something else.
+	.refine((id) => !(id in Object.prototype), 'expected another id: this name is reserved');
 
 /** Name shown to people; the id is shown where there is none. */
 export const nameSchema = z.string().min(1).max(200);
@@ -45,10 +47,23 @@ export const pointUmSchema = z.tuple([coordinateUmSchema, coordinateUmSchema]);
 /** A closed polygon without its first corner repeated, um; that it is simple is checked on the document. */
 export const outlineSchema = z.array(pointUmSchema).min(3).max(10_000);
 
-export const positiveSchema = z.number().positive();
-export const nonNegativeSchema = z.number().nonnegative();
+/**
+ * Magnitudes beyond these are slips, and products of a few of them would leave the range of a
+ * double. Wide enough for any quantity in SI units, and for 1e30 as "never".
+ */
+const LARGEST = 1e30;
+const SMALLEST = 1e-30;
+
+/** Any signed quantity. */
+export const quantitySchema = z.number().min(-LARGEST).max(LARGEST);
+export const positiveSchema = z
+	.number()
+	.positive()
+	.max(LARGEST)
+	.refine((value) => value <= 0 || value >= SMALLEST, `expected at least ${SMALLEST}`);
+export const nonNegativeSchema = z.number().nonnegative().max(LARGEST);
 /** A share of a limit: 0.8 is 80 %. */
-export const fractionSchema = z.number().nonnegative();
+export const fractionSchema = nonNegativeSchema;
 
 export type PointUm = z.infer<typeof pointUmSchema>;
 export type OutlineUm = z.infer<typeof outlineSchema>;

@@ -9,10 +9,10 @@ export interface Problem {
 /** How many problems are printed before the rest is only counted. */
 const MOST_PRINTED = 20;
 
-/** One line per problem, at most 20 and a count of the rest. */
-export function formatProblems(problems: readonly Problem[]): string[] {
+/** One line per problem, at most `most` of them and a count of the rest. */
+export function formatProblems(problems: readonly Problem[], most = MOST_PRINTED): string[] {
 	const lines = problems
-		.slice(0, MOST_PRINTED)
+		.slice(0, most)
 		.map(({ path, message }) => `${path || 'document'}: ${message}`);
 	const rest = problems.length - lines.length;
 	return rest > 0 ? [...lines, `and ${rest} more`] : lines;
@@ -23,16 +23,23 @@ export function itemPath(list: string, index: number, id: string): string {
 	return `${list}[${index}] (${id})`;
 }
 
+/** A field of an unknown value, never one that it inherits. */
+export function ownValue(value: unknown, key: PropertyKey): unknown {
+	return typeof value === 'object' && value !== null && Object.hasOwn(value, key)
+		? Reflect.get(value, key)
+		: undefined;
+}
+
 /** A path of keys as text; the id of each list item that has one stands beside its index. */
 export function describePath(root: unknown, keys: readonly PropertyKey[]): string {
 	let text = '';
 	let value: unknown = root;
 	for (const key of keys) {
-		value = typeof value === 'object' && value !== null ? Reflect.get(value, key) : undefined;
+		value = ownValue(value, key);
 		if (typeof key === 'number') {
-			const id = typeof value === 'object' && value !== null ? Reflect.get(value, 'id') : undefined;
+			const id = ownValue(value, 'id');
 			text += `[${key}]`;
-			if (typeof id === 'string' && id.length <= 64) text += ` (${id})`;
+			if (typeof id === 'string' && id !== '' && id.length <= 64) text += ` (${id})`;
 		} else {
 			text += text === '' ? String(key) : `.${String(key)}`;
 		}

@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { coordinateUmSchema, idSchema, nameSchema } from './primitives.ts';
+import { coordinateUmSchema, idSchema, nameSchema, quantitySchema } from './primitives.ts';
 
 export const ORIENTATIONS = ['R0', 'R90', 'R180', 'R270', 'MX', 'MY', 'MXR90', 'MYR90'] as const;
 
@@ -18,7 +18,7 @@ export const regulatorSchema = z.strictObject({
 	/** A fixed regulator is not moved by people or by searches. */
 	fixed: z.boolean().default(false),
 	/** Offset of this unit's set point, V. */
-	offsetV: z.number().default(0)
+	offsetV: quantitySchema.default(0)
 });
 
 export type Regulator = z.infer<typeof regulatorSchema>;

@@ -1,6 +1,5 @@
 import { isSimplePolygon, signedArea } from '#lib/geometry/index.ts';
-import type { Floorplan } from './document.ts';
-import { ITEM_LISTS } from './document.ts';
+import { ITEM_LISTS, LIST_LENGTHS, type Floorplan, type ItemList } from './document.ts';
 import { itemPath, type Problem } from './problems.ts';
 import type { OutlineUm } from './primitives.ts';
 
@@ -18,6 +17,17 @@ export function checkRules(floorplan: Floorplan): Problem[] {
 		...blockReferences(floorplan),
 		...conditionReferences(floorplan)
 	];
+}
+
+/** A list that is too short or too long; parsing checks this too, for documents as a whole. */
+export function lengthProblem(list: ItemList, length: number): Problem[] {
+	const [least, most] = LIST_LENGTHS[list];
+	if (length >= least && length <= most) return [];
+	return [{ path: list, message: `${length} items (expected ${least} to ${most})` }];
+}
+
+export function checkListLengths(floorplan: Floorplan): Problem[] {
+	return ITEM_LISTS.flatMap((list) => lengthProblem(list, floorplan[list].length));
 }
 
 function quoted(ids: readonly string[]): string {
@@ -143,18 +153,18 @@ function netProblem(
 	kinds: readonly Kind[]
 ): Problem[] {
 	const net = nets.find((candidate) => candidate.id === id);
-	const wanted = `${kinds.join(' or ')} net`;
+	const wanted = `${/^[aeiou]/.test(kinds[0]) ? 'an' : 'a'} ${kinds.join(' or ')} net`;
 	if (!net) {
 		const fitting = nets
 			.filter(({ kind }) => kinds.includes(kind))
 			.map((candidate) => candidate.id);
 		return [
-			{ path, message: `net "${id}" does not exist (expected an ${wanted}: ${quoted(fitting)})` }
+			{ path, message: `net "${id}" does not exist (expected ${wanted}: ${quoted(fitting)})` }
 		];
 	}
 	return kinds.includes(net.kind)
 		? []
-		: [{ path, message: `net "${id}" is ${net.kind} (expected an ${wanted})` }];
+		: [{ path, message: `net "${id}" is ${net.kind} (expected ${wanted})` }];
 }
 
 function netReferences(floorplan: Floorplan): Problem[] {

@@ -1,9 +1,10 @@
-import { z } from 'zod';
+import type { z } from 'zod';
 import { jsonEquals } from '../canonical.ts';
-import { floorplanSchema, type Floorplan, type ItemList } from '../document.ts';
-import { shapeProblems } from '../parse.ts';
+import { floorplanSchema, itemSchemaOf, type Floorplan, type ItemList } from '../document.ts';
 import { itemPath, type Problem } from '../problems.ts';
-import { checkRules } from '../rules.ts';
+import { checkListLengths, checkRules } from '../rules.ts';
+import { shapeProblems } from '../shape-problems.ts';
+import { ItemTable } from './item-table.ts';
 import type { Item, Operation, Property } from './operation.ts';
 
 /** Somebody has changed meanwhile what an operation expected to find. */
@@ -22,135 +23,148 @@ export interface Conflict {
 }
 
 export type ApplyResult =
-	| { readonly status: 'applied'; readonly floorplan: Floorplan }
+	| {
+			readonly status: 'applied';
+			readonly floorplan: Floorplan;
+			/** Operations that lead back; their `from` values are what really stands in the document. */
+			readonly inverse: Operation[];
+	  }
 	| { readonly status: 'conflict'; readonly conflicts: readonly Conflict[] }
 	| { readonly status: 'refused'; readonly problems: readonly Problem[] };
 
 /** A document under change: lists are copied when first written, everything else is shared. */
 type Draft = { -readonly [K in keyof Floorplan]: Floorplan[K] };
 
+/** What one operation did: its inverse, or what stands against it. */
+type Step =
+	| { readonly inverse: Operation; readonly problems: readonly Problem[] }
+	| { readonly conflict: Omit<Conflict, 'operation'> };
+
 /**
  * Applies an edit to a document, the same way in the browser and on the server. All or nothing:
  * conflicts name what somebody else changed, problems what the rules of the format refuse. Items
- * that are not touched keep their identity.
+ * that are not touched keep their identity. Values are brought to the form that parsing a document
+ * gives them (defaults, nanometre grid) as they are written.
  */
 export function applyOperations(
 	floorplan: Floorplan,
 	operations: readonly Operation[]
 ): ApplyResult {
 	const draft: Draft = { ...floorplan };
-	const written = new Set<ItemList>();
-	const touched = new Map<string, { list: ItemList; id: string }>();
-	const properties = new Set<Property>();
+	const tables = new Map<ItemList, ItemTable>();
 	const conflicts: Conflict[] = [];
-	const listOf = (list: ItemList): Item[] => {
-		if (!written.has(list)) {
-			written.add(list);
-			Object.assign(draft, { [list]: [...draft[list]] });
-		}
-		return draft[list] as Item[];
-	};
+	const problems: Problem[] = [];
+	const inverse: Operation[] = [];
 	operations.forEach((operation, index) => {
-		if (operation.op === 'set') {
-			properties.add(operation.property);
-			conflicts.push(...setProperty(draft, operation, index));
-			return;
+		const step =
+			operation.op === 'set'
+				? setProperty(draft, operation)
+				: changeList(tableOf(draft, tables, operation.list), operation);
+		if ('conflict' in step) {
+			conflicts.push({ operation: index, ...step.conflict });
+		} else {
+			problems.push(...step.problems);
+			inverse.push(step.inverse);
 		}
-		const id = operation.op === 'change' ? operation.id : operation.item.id;
-		if (operation.op !== 'remove')
-			touched.set(`${operation.list}:${id}`, { list: operation.list, id });
-		conflicts.push(...changeList(listOf(operation.list), operation, index));
 	});
 	if (conflicts.length > 0) return { status: 'conflict', conflicts };
-	const shape = [
-		...[...touched.values()].flatMap(({ list, id }) => reparseItem(draft, list, id)),
-		...[...properties].flatMap((property) => reparseProperty(draft, property))
-	];
-	if (shape.length > 0) return { status: 'refused', problems: shape };
-	const problems = checkRules(draft);
+	if (problems.length === 0) problems.push(...checkListLengths(draft), ...checkRules(draft));
 	return problems.length > 0
 		? { status: 'refused', problems }
-		: { status: 'applied', floorplan: draft };
+		: { status: 'applied', floorplan: draft, inverse: inverse.reverse() };
 }
 
-function setProperty(
-	draft: Draft,
-	operation: Extract<Operation, { op: 'set' }>,
-	index: number
-): Conflict[] {
+function tableOf(draft: Draft, tables: Map<ItemList, ItemTable>, list: ItemList): ItemTable {
+	let table = tables.get(list);
+	if (!table) {
+		table = new ItemTable(draft[list] as readonly Item[]);
+		tables.set(list, table);
+		Object.assign(draft, { [list]: table.items });
+	}
+	return table;
+}
+
+/** A value in the form of its schema; as it came, with problems, where it does not fit. */
+function normalise(
+	schema: z.ZodType,
+	value: unknown,
+	path: string
+): { value: unknown; problems: Problem[] } {
+	const parsed = schema.safeParse(value);
+	if (parsed.success) return { value: parsed.data, problems: [] };
+	const problems = shapeProblems(value, parsed.error.issues).map((problem) => ({
+		path: `${path}${problem.path === '' || problem.path.startsWith('[') ? '' : '.'}${problem.path}`,
+		message: problem.message
+	}));
+	return { value, problems };
+}
+
+function setProperty(draft: Draft, operation: Extract<Operation, { op: 'set' }>): Step {
 	const { property, from, to } = operation;
 	const present = draft[property];
 	if (!jsonEquals(present, from)) {
-		return [{ operation: index, property, mine: to, theirs: present, reason: 'changed' }];
+		return { conflict: { property, mine: to, theirs: present, reason: 'changed' } };
 	}
-	Object.assign(draft, { [property]: to });
-	if (to === undefined) delete draft[property];
-	return [];
+	const { value, problems } = normalise(floorplanSchema.shape[property], to, property);
+	if (value === undefined) delete draft[property];
+	else Object.assign(draft, { [property]: value });
+	return { inverse: { op: 'set', property, from: value, to: present }, problems };
 }
 
-function changeList(
-	items: Item[],
-	operation: Exclude<Operation, { op: 'set' }>,
-	index: number
-): Conflict[] {
+function changeList(table: ItemTable, operation: Exclude<Operation, { op: 'set' }>): Step {
 	const { list } = operation;
 	const id = operation.op === 'change' ? operation.id : operation.item.id;
-	const at = items.findIndex((item) => item.id === id);
-	const present = at === -1 ? undefined : items[at];
-	const where = { operation: index, list, id };
+	const at = table.indexOf(id);
+	const present = at === -1 ? undefined : table.items[at];
 	switch (operation.op) {
-		case 'insert':
+		case 'insert': {
 			if (present) {
-				return [{ ...where, mine: operation.item, theirs: present, reason: 'taken' }];
+				return {
+					conflict: { list, id, mine: operation.item, theirs: present, reason: 'taken' }
+				};
 			}
-			items.splice(Math.min(operation.index, items.length), 0, operation.item);
-			return [];
-		case 'remove':
-			if (!present) return [{ ...where, reason: 'gone' }];
-			if (!jsonEquals(present, operation.item)) {
-				return [{ ...where, theirs: present, reason: 'changed' }];
-			}
-			items.splice(at, 1);
-			return [];
-		case 'change': {
-			const { field, from, to } = operation;
-			if (!present) return [{ ...where, field, mine: to, reason: 'gone' }];
-			if (!jsonEquals(present[field], from)) {
-				return [{ ...where, field, mine: to, theirs: present[field], reason: 'changed' }];
-			}
-			const { [field]: _replaced, ...rest } = present;
-			items[at] = (to === undefined ? rest : { ...present, [field]: to }) as Item;
-			return [];
+			const index = Math.min(operation.index, table.items.length);
+			const parsed = normalise(itemSchemaOf(list), operation.item, itemPath(list, index, id));
+			const item = parsed.value as Item;
+			table.insert(index, item);
+			return { inverse: { op: 'remove', list, index, item }, problems: parsed.problems };
 		}
+		case 'remove':
+			if (!present) return { conflict: { list, id, reason: 'gone' } };
+			if (!jsonEquals(present, operation.item)) {
+				return { conflict: { list, id, theirs: present, reason: 'changed' } };
+			}
+			table.remove(at);
+			return { inverse: { op: 'insert', list, index: at, item: present }, problems: [] };
+		case 'change':
+			return changeField(table, operation, at);
 	}
 }
 
-/** Checks one item against its schema and puts the parsed form (defaults, grid) in its place. */
-function reparseItem(draft: Draft, list: ItemList, id: string): Problem[] {
-	const items = draft[list] as Item[];
-	const at = items.findIndex((item) => item.id === id);
-	if (at === -1) return [];
-	const wrapped = floorplanSchema.shape[list];
-	const array = wrapped instanceof z.ZodDefault ? wrapped.unwrap() : wrapped;
-	const parsed = array.element.safeParse(items[at]);
-	if (!parsed.success) {
-		return shapeProblems(items[at], parsed.error.issues).map(({ path, message }) => ({
-			path: `${itemPath(list, at, id)}${path && '.'}${path}`,
-			message
-		}));
+function changeField(
+	table: ItemTable,
+	{ list, id, field, from, to }: Extract<Operation, { op: 'change' }>,
+	at: number
+): Step {
+	if (at === -1) return { conflict: { list, id, field, mine: to, reason: 'gone' } };
+	const item = table.items[at];
+	const present = Object.hasOwn(item, field) ? item[field] : undefined;
+	if (!jsonEquals(present, from)) {
+		return { conflict: { list, id, field, mine: to, theirs: present, reason: 'changed' } };
 	}
-	items[at] = parsed.data as Item;
-	return [];
-}
-
-function reparseProperty(draft: Draft, property: Property): Problem[] {
-	const parsed = floorplanSchema.shape[property].safeParse(draft[property]);
-	if (!parsed.success) {
-		return shapeProblems(draft[property], parsed.error.issues).map(({ path, message }) => ({
-			path: `${property}${path && '.'}${path}`,
-			message
-		}));
+	const path = `${itemPath(list, at, id)}.${field}`;
+	const { shape } = itemSchemaOf(list);
+	const inverse: Operation = { op: 'change', list, id, field, from: to, to: present };
+	if (field === 'id') {
+		const message = 'an id does not change (expected to remove the item and insert another)';
+		return { inverse, problems: [{ path, message }] };
 	}
-	if (parsed.data !== undefined) Object.assign(draft, { [property]: parsed.data });
-	return [];
+	if (!Object.hasOwn(shape, field)) {
+		const message = 'unknown field (expected only the fields of the format)';
+		return { inverse, problems: [{ path, message }] };
+	}
+	const { value, problems } = normalise(shape[field] as z.ZodType, to, path);
+	const { [field]: _replaced, ...rest } = item;
+	table.replace(at, value === undefined ? { ...rest, id } : { ...item, [field]: value });
+	return { inverse: { ...inverse, from: value }, problems };
 }

@@ -9,8 +9,8 @@ import {
 	duplicateItems,
 	editSchema,
 	findItem,
-	invertOperations,
 	moveItems,
+	operationSchema,
 	partsTouched,
 	removeItems,
 	setProperty,
@@ -68,24 +68,82 @@ describe('applyOperations', () => {
 			fc.property(fc.array(actions, { maxLength: 12 }), (steps) => {
 				const start = example();
 				let floorplan = start;
-				const done: Operation[][] = [];
+				const back: Operation[][] = [];
 				for (const step of steps) {
-					const { operations } = step(floorplan);
-					const result = applyOperations(floorplan, operations);
+					const result = applyOperations(floorplan, step(floorplan).operations);
 					if (result.status !== 'applied') continue;
 					floorplan = result.floorplan;
-					done.push(operations);
+					back.push(result.inverse);
 				}
 				const end = hashFloorplan(floorplan);
-				for (const operations of [...done].reverse()) {
-					floorplan = applied(floorplan, invertOperations(operations));
+				const again: Operation[][] = [];
+				for (const operations of back.reverse()) {
+					const result = applyOperations(floorplan, operations);
+					if (result.status !== 'applied') throw new Error(JSON.stringify(result));
+					floorplan = result.floorplan;
+					again.push(result.inverse);
 				}
 				expect(hashFloorplan(floorplan)).toBe(hashFloorplan(start));
-				for (const operations of done) floorplan = applied(floorplan, operations);
+				for (const operations of again.reverse()) floorplan = applied(floorplan, operations);
 				expect(hashFloorplan(floorplan)).toBe(end);
 			}),
 			{ numRuns: 100 }
 		);
+	});
+
+	it('the inverse holds what stands in the document: defaults filled in, lengths on the grid', () => {
+		const start = example();
+		const result = applyOperations(start, [
+			{
+				op: 'insert',
+				list: 'feeds',
+				index: 99,
+				item: { id: 'new', net: 'vin', xUm: 1.00000004, yUm: 2, seriesOhm: 0 }
+			},
+			{
+				op: 'insert',
+				list: 'regulators',
+				index: 99,
+				item: { id: 'R3', cell: 'weir', input: null, output: 'core', xUm: 5, yUm: 5 }
+			},
+			{ op: 'change', list: 'regulators', id: 'R3', field: 'xUm', from: 5, to: 9.99999996 },
+			{ op: 'remove', list: 'blocks', index: 7, item: start.blocks[0] }
+		]);
+		if (result.status !== 'applied') throw new Error(JSON.stringify(result));
+		expect(result.inverse).toEqual([
+			{ op: 'insert', list: 'blocks', index: 0, item: start.blocks[0] },
+			{ op: 'change', list: 'regulators', id: 'R3', field: 'xUm', from: 10, to: 5 },
+			{
+				op: 'remove',
+				list: 'regulators',
+				index: 2,
+				item: { ...result.floorplan.regulators[2], xUm: 5 }
+			},
+			{ op: 'remove', list: 'feeds', index: 2, item: { ...result.floorplan.feeds[2], xUm: 1 } }
+		]);
+		expect(hashFloorplan(applied(result.floorplan, result.inverse))).toBe(hashFloorplan(start));
+	});
+
+	it('an id does not change, and the last mode stays', () => {
+		const start = example();
+		expect(
+			applyOperations(start, changeField(start, 'regulators', ['R1'], 'id', 'a b').operations)
+		).toMatchObject({ status: 'refused', problems: [{ path: 'regulators[0] (R1).id' }] });
+		const idle = applied(start, changeField(start, 'blocks', ['cpu'], 'amps', {}).operations);
+		expect(
+			applyOperations(idle, removeItems(idle, [{ list: 'modes', id: 'run' }]).operations)
+		).toMatchObject({ status: 'refused', problems: [{ path: 'modes' }] });
+	});
+
+	it('a field that every object inherits is unknown like any other', () => {
+		const start = example();
+		const operations: Operation[] = [
+			{ op: 'change', list: 'regulators', id: 'R1', field: 'constructor', to: 1 }
+		];
+		expect(applyOperations(start, operations)).toMatchObject({
+			status: 'refused',
+			problems: [{ path: 'regulators[0] (R1).constructor' }]
+		});
 	});
 
 	it('edits of different objects commute', () => {
@@ -177,6 +235,17 @@ describe('applyOperations', () => {
 			status: 'refused',
 			problems: [{ path: 'regulators[0] (R1).colour' }]
 		});
+	});
+
+	it('values nested without end, or with a key __proto__, are no operations', () => {
+		let deep: unknown = 0;
+		for (let k = 0; k < 100_000; k++) deep = [deep];
+		const hostile: unknown = JSON.parse('{ "id": "x", "__proto__": { "fixed": true } }');
+		const [one, two] = [
+			{ op: 'change', list: 'nets', id: 'core', field: 'volts', from: deep, to: 1 },
+			{ op: 'insert', list: 'nets', index: 0, item: hostile }
+		].map((operation) => operationSchema.safeParse(operation));
+		expect([one.success, two.success]).toEqual([false, false]);
 	});
 
 	it('operations survive a journey as JSON', () => {

@@ -1,6 +1,5 @@
 export type { Edit, Item, Operation, Property } from './operation.ts';
 export { editSchema, operationSchema, partsTouched, PROPERTIES } from './operation.ts';
-export { invertOperations } from './invert.ts';
 export type { ApplyResult, Conflict } from './apply.ts';
 export { applyOperations } from './apply.ts';
 export type { EditDraft, ItemReference, PlacedList } from './actions.ts';

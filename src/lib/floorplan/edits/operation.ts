@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { isPlainJson } from '../canonical.ts';
 import { ITEM_LISTS, type ItemList } from '../document.ts';
 import { idSchema } from '../primitives.ts';
 
@@ -6,7 +7,14 @@ import { idSchema } from '../primitives.ts';
 export const PROPERTIES = ['name', 'die', 'sites', 'stack', 'limits', 'mesh'] as const;
 export type Property = (typeof PROPERTIES)[number];
 
-const itemSchema = z.looseObject({ id: idSchema });
+const plainJson = 'expected JSON nested at most 16 deep';
+const valueSchema = z
+	.unknown()
+	.refine((value) => value === undefined || isPlainJson(value), plainJson);
+const itemSchema = z
+	.unknown()
+	.refine(isPlainJson, plainJson)
+	.pipe(z.looseObject({ id: idSchema }));
 const listSchema = z.enum(ITEM_LISTS);
 const indexSchema = z.int().nonnegative();
 
@@ -19,29 +27,33 @@ export const operationSchema = z.discriminatedUnion('op', [
 	z.strictObject({
 		op: z.literal('insert'),
 		list: listSchema,
+		/** Place in the list; the end where the list is shorter. */
 		index: indexSchema,
 		item: itemSchema
 	}),
-	/** `item` as it was. */
 	z.strictObject({
 		op: z.literal('remove'),
 		list: listSchema,
 		index: indexSchema,
+		/** The item as it was. */
 		item: itemSchema
 	}),
 	z.strictObject({
 		op: z.literal('change'),
 		list: listSchema,
 		id: idSchema,
-		field: z.string().regex(/^[A-Za-z]{1,40}$/),
-		from: z.json().optional(),
-		to: z.json().optional()
+		field: z
+			.string()
+			.regex(/^[A-Za-z]{1,40}$/)
+			.refine((field) => field !== 'id', 'an id does not change (expected another field)'),
+		from: valueSchema.optional(),
+		to: valueSchema.optional()
 	}),
 	z.strictObject({
 		op: z.literal('set'),
 		property: z.enum(PROPERTIES),
-		from: z.json().optional(),
-		to: z.json().optional()
+		from: valueSchema.optional(),
+		to: valueSchema.optional()
 	})
 ]);
 
