@@ -120,6 +120,6 @@ export function solvedModes(floorplan: Floorplan): Map<string, Solved> {
  * crossing, so it is read at three small resistances h, 2h and 3h and continued to none by the
  * parabola through them (3 f(h) - 3 f(2h) + f(3h), off by a multiple of h^3).
  */
-export function withoutVias(valueAt: (viaOhm: number) => number, viaOhm = 1e-5): number {
+export function withoutVias(valueAt: (viaOhm: number) => number, viaOhm = 1e-4): number {
 	return 3 * valueAt(viaOhm) - 3 * valueAt(2 * viaOhm) + valueAt(3 * viaOhm);
 }

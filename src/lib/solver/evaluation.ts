@@ -10,6 +10,14 @@ export interface Unknowns {
 	readonly correction: Float64Array;
 }
 
+/** The unknowns after the part `t` of a step. */
+export function moved({ voltage, correction }: Unknowns, step: Unknowns, t: number): Unknowns {
+	return {
+		voltage: voltage.map((value, node) => value + t * step.voltage[node]),
+		correction: correction.map((value, s) => value + t * step.correction[s])
+	};
+}
+
 /** A loop holds the mean, or stands at the lower or upper end of its range. */
 export const LOOP_LOW = -1;
 export const LOOP_HOLDING = 0;
@@ -109,16 +117,20 @@ function addRegulatorCurrents(circuit: Circuit, amps: Float64Array, into: Float6
 	}
 }
 
-/** Laws, pieces and mismatches at the given unknowns. */
-export function evaluate(circuit: Circuit, unknowns: Unknowns): Evaluation {
+/**
+ * Laws, pieces and mismatches at the given unknowns.
+ * @param leak slope of the regulators' flat pieces, see `pieceOf`; 0 for the law itself
+ */
+export function evaluate(circuit: Circuit, unknowns: Unknowns, leak: number): Evaluation {
 	const { voltage, correction } = unknowns;
 	const { regulators: units, loads, senses, held } = circuit;
 	const { wantedA, fullyOnA } = regulatorDrives(circuit, unknowns);
 	const piece = new Uint8Array(units.count);
 	const amps = new Float64Array(units.count);
 	for (let k = 0; k < units.count; k++) {
-		piece[k] = pieceOf(wantedA[k], fullyOnA[k], units.maxA[k], units.sinkA[k]);
-		amps[k] = currentOn(piece[k], wantedA[k], fullyOnA[k], units.maxA[k], units.sinkA[k]);
+		const drive = { wantedA: wantedA[k], fullyOnA: fullyOnA[k] };
+		piece[k] = pieceOf(drive, units.maxA[k], units.sinkA[k], leak);
+		amps[k] = currentOn(piece[k], drive, units.maxA[k], units.sinkA[k], leak);
 	}
 
 	const mismatchA = new Float64Array(voltage.length);

@@ -14,3 +14,4 @@ export type {
 	SolveStatistics,
 	SolveWarning
 } from './operating-point.ts';
+export { SOLVER_VERSION } from './version.ts';

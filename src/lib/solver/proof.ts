@@ -9,7 +9,8 @@ import {
 	PIECE_REGULATING,
 	PIECE_STARVED,
 	currentOn,
-	pieceOf
+	pieceOf,
+	type Drive
 } from './regulator-law.ts';
 
 /** A current this near to a bound, as a fraction of maxA, stands at it. */
@@ -53,11 +54,12 @@ function leavingCurrents(circuit: Circuit, answer: Answer): Float64Array {
 /** The state that a unit's law gives at the answer's voltages, near a bound the bound. */
 export function stateOf(circuit: Circuit, answer: Answer, k: number): RegulatorState {
 	const { regulators } = circuit;
-	const { wantedA, fullyOnA } = drives(circuit, answer, k);
+	const drive = driveOf(circuit, answer, k);
+	const { wantedA, fullyOnA } = drive;
 	const maxA = regulators.maxA[k];
 	const sinkA = regulators.sinkA[k];
 	const near = STATE_TOLERANCE * maxA;
-	switch (pieceOf(wantedA, fullyOnA, maxA, sinkA)) {
+	switch (pieceOf(drive, maxA, sinkA, 0)) {
 		case PIECE_LIMITED:
 			return 'limited';
 		case PIECE_IDLE:
@@ -71,11 +73,7 @@ export function stateOf(circuit: Circuit, answer: Answer, k: number): RegulatorS
 	}
 }
 
-function drives(
-	circuit: Circuit,
-	answer: Answer,
-	k: number
-): { wantedA: number; fullyOnA: number } {
+function driveOf(circuit: Circuit, answer: Answer, k: number): Drive {
 	const { regulators } = circuit;
 	const shift = regulators.sense[k] < 0 ? 0 : answer.correctionV[regulators.sense[k]];
 	const set = regulators.setV[k] + shift + volts(answer.voltage, regulators.referenceNode[k]);
@@ -91,11 +89,12 @@ function drives(
 function regulatorsConsistent(circuit: Circuit, answer: Answer): boolean {
 	const { regulators } = circuit;
 	for (let k = 0; k < regulators.count; k++) {
-		const { wantedA, fullyOnA } = drives(circuit, answer, k);
+		const drive = driveOf(circuit, answer, k);
+		const { wantedA } = drive;
 		const maxA = regulators.maxA[k];
 		const sinkA = regulators.sinkA[k];
-		const piece = pieceOf(wantedA, fullyOnA, maxA, sinkA);
-		const lawA = currentOn(piece, wantedA, fullyOnA, maxA, sinkA);
+		const piece = pieceOf(drive, maxA, sinkA, 0);
+		const lawA = currentOn(piece, drive, maxA, sinkA, 0);
 		const tolerance = VOLTAGE_TOLERANCE_V / regulators.outputOhm[k] + STATE_TOLERANCE * maxA;
 		const amps = answer.regulatorAmps[k];
 		if (Math.abs(amps - lawA) > tolerance) return false;

@@ -2,7 +2,7 @@ import type { Circuit } from './circuit.ts';
 import { seenRatio } from './capacity.ts';
 import type { Unknowns } from './evaluation.ts';
 import type { GridFactors } from './grid-factors.ts';
-import { solveNewton, type NewtonOptions, type NewtonResult } from './newton.ts';
+import { solveStage, type NewtonOptions, type NewtonResult } from './newton.ts';
 
 /** Fraction of nominal at which a block that is taken for collapsed starts. */
 const COLLAPSED_START = 0.05;
@@ -25,6 +25,82 @@ export function startingPoint(circuit: Circuit, collapsed: ReadonlySet<number>):
 		if (feeds.seriesOhm[f] === 0) voltage[feeds.node[f]] = feeds.volts[f];
 	}
 	return { voltage, correction: new Float64Array(circuit.senses.length) };
+}
+
+/** Steps of the plain iteration before the way over leaking laws is taken. */
+const PLAIN_STEPS = 25;
+const STAGE_STEPS = 200;
+/** Slopes of the flat pieces on the way to the law itself. */
+const LEAKS = [1e-1, 1e-2, 1e-4, 1e-6];
+/** Mismatch at which a law on the way is left, relative to the load. */
+const STAGE_TARGET = 1e-6;
+
+/**
+ * From one starting point to the law itself: plain Newton; where states come back or no step helps,
+ * over laws whose flat pieces have a slope that goes to zero. Each of those has one solution that
+ * moves little from the one before, and no singular Jacobian on the way.
+ * @param pivotOnly changes one piece at a time throughout, without the plain iteration
+ */
+export function solveNewton(
+	circuit: Circuit,
+	grid: GridFactors,
+	start: Unknowns,
+	options: NewtonOptions & { readonly pivotOnly?: boolean } = {}
+): NewtonResult {
+	let steps = 0;
+	let iterations = 0;
+	const counted = (result: NewtonResult): NewtonResult => ({
+		...result,
+		steps: (steps += result.steps),
+		iterations: (iterations += result.iterations)
+	});
+	const onStep = (step: number, relative: number) => options.onStep?.(steps + step, relative);
+	let result: NewtonResult | null = null;
+	if (options.pivotOnly !== true) {
+		result = counted(
+			solveStage(circuit, grid, start, {
+				...options,
+				onStep,
+				leak: 0,
+				maxSteps: PLAIN_STEPS,
+				startLinear: true,
+				onCycle: 'give-up'
+			})
+		);
+		if (result.status !== 'stuck') return result;
+	}
+	let at = start;
+	for (const leak of LEAKS) {
+		const stage = counted(
+			solveStage(circuit, grid, at, {
+				...options,
+				onStep,
+				leak,
+				maxSteps: STAGE_STEPS,
+				target: STAGE_TARGET,
+				startLinear: at === start && options.pivotOnly !== true,
+				onCycle: 'pivot'
+			})
+		);
+		if (stage.status === 'stopped') return stage;
+		if (stage.status === 'stuck') {
+			if (result === null || stage.relative < result.relative) result = stage;
+			break;
+		}
+		at = stage.unknowns;
+	}
+	const last = counted(
+		solveStage(circuit, grid, at, {
+			...options,
+			onStep,
+			leak: 0,
+			maxSteps: STAGE_STEPS,
+			onCycle: 'pivot'
+		})
+	);
+	return last.status !== 'stuck' || result === null || last.relative < result.relative
+		? last
+		: { ...result, steps, iterations };
 }
 
 /** Lowest fraction of nominal that each block of falling current-voltage law sees. */
