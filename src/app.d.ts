@@ -1,5 +1,20 @@
+import type { Actor } from '#lib/server/audit.ts';
+import type { Session } from '#lib/server/auth/session.ts';
+
 declare global {
-	namespace App {}
+	namespace App {
+		interface Error {
+			message: string;
+			/** Id of the request, for questions to an administrator. */
+			requestId?: string;
+		}
+		interface Locals {
+			requestId: string;
+			session: Session | null;
+			/** Whoever is signed in, as services want to know them. */
+			actor: Actor | null;
+		}
+	}
 }
 
 export {};

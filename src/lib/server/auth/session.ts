@@ -125,6 +125,15 @@ export async function readSession(db: Database, token: string): Promise<Session 
 	};
 }
 
+/** Whether a session has not ended: streams that outlive their request ask again. */
+export async function isSessionOpen(db: Handle, sessionId: string): Promise<boolean> {
+	const rows = await db
+		.select({ id: sessions.id })
+		.from(sessions)
+		.where(and(eq(sessions.id, sessionId), gt(sessions.expiresAt, new Date())));
+	return rows.length > 0;
+}
+
 export async function endSession(db: Database, sessionId: string): Promise<void> {
 	await lucia(db).invalidateSession(sessionId);
 }

@@ -1,5 +1,5 @@
 import { asc, desc, eq } from 'drizzle-orm';
-import { may } from '#lib/contracts/index.ts';
+import { may, type SessionAnswer } from '#lib/contracts/index.ts';
 import { requireAccess } from '../access/access.ts';
 import type { Actor } from '../audit.ts';
 import type { Handle } from '../db/client.ts';
@@ -40,4 +40,15 @@ export async function getTeam(db: Handle, actor: Actor): Promise<TeamPage> {
 		outcome: event.outcome
 	}));
 	return { name: team.name, people, trail };
+}
+
+/** Who is signed in. */
+export async function getSignedIn(db: Handle, actor: Actor): Promise<SessionAnswer> {
+	const [row] = await db
+		.select({ user: users, teamName: teams.name })
+		.from(users)
+		.innerJoin(teams, eq(teams.id, users.teamId))
+		.where(eq(users.id, actor.userId));
+	const { id, name, email, teamId, isTeamAdmin } = row.user;
+	return { user: { id, name, email, teamId, isTeamAdmin, teamName: row.teamName } };
 }

@@ -1,0 +1,27 @@
+/** Works on background jobs until it is told to stop. */
+import { config } from '#lib/server/config.ts';
+import { closeDatabase, connection } from '#lib/server/db/client.ts';
+import { registry } from '#lib/server/jobs/run-job.ts';
+import { solveKind } from '#lib/server/jobs/solve-kind.ts';
+import { SolveRunner } from '#lib/server/jobs/solve-runner.ts';
+import { startWorker } from '#lib/server/jobs/worker.ts';
+import { log } from '#lib/server/log.ts';
+import { runService } from './run-service.ts';
+
+await runService('worker', async () => {
+	const solver = new SolveRunner();
+	const worker = await startWorker(
+		connection(),
+		config().DATABASE_URL,
+		registry([solveKind(solver)])
+	);
+	log.info('worker ready');
+	const stop = async () => {
+		await worker.stop();
+		solver.stop();
+		await closeDatabase();
+		process.exit(0);
+	};
+	process.once('SIGTERM', () => void stop());
+	process.once('SIGINT', () => void stop());
+});

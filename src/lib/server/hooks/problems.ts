@@ -1,0 +1,89 @@
+import type { Handle, HandleServerError } from '@sveltejs/kit';
+import { log } from '../log.ts';
+import { Problem, problemResponse } from '../problem.ts';
+
+/** Postgres is not there, shuts down, or has no room: the request may work in a while. */
+const AWAY =
+	/^(ECONNREFUSED|ECONNRESET|CONNECT_TIMEOUT|CONNECTION_(CLOSED|ENDED|DESTROYED)|57P0\d|53\d{3}|08\d{3})$/;
+const RETRY_AFTER_SECONDS = 5;
+
+function codeOf(error: unknown): string {
+	if (typeof error !== 'object' || error === null) return '';
+	if ('code' in error && typeof error.code === 'string') return error.code;
+	return 'cause' in error ? codeOf(error.cause) : '';
+}
+
+/** What of an error may be logged: never the values of a query. */
+export function loggable(error: unknown): Record<string, unknown> {
+	if (!(error instanceof Error)) return { message: String(error) };
+	const cause = error.cause instanceof Error ? error.cause : error;
+	return { name: cause.name, code: codeOf(error), message: cause.message, stack: cause.stack };
+}
+
+/** An expected problem, or that the database is away; anything else is a fault of ours. */
+export function asProblem(error: unknown): Problem | null {
+	if (error instanceof Problem) return error;
+	if (!AWAY.test(codeOf(error))) return null;
+	return new Problem(
+		'unavailable',
+		'The database is away or full. Your work is kept; try again in a moment.',
+		{
+			retryAfterSeconds: RETRY_AFTER_SECONDS
+		}
+	);
+}
+
+/** Statuses that the framework itself answers with, as problem documents for the API. */
+const FRAMEWORK_PROBLEMS: Readonly<Record<number, string>> = {
+	404: 'There is no such address.',
+	405: 'This address does not know this method.',
+	413: 'The request is larger than allowed here.'
+};
+
+/** Answers of the API that are not yet problem documents become such. */
+export const apiProblems: Handle = async ({ event, resolve }) => {
+	const response = await resolve(event);
+	if (!event.url.pathname.startsWith('/api/') || response.status < 400) return response;
+	if (response.headers.get('content-type')?.startsWith('application/problem+json')) return response;
+	const detail = FRAMEWORK_PROBLEMS[response.status] ?? 'Something went wrong on the server.';
+	const headers = new Headers({ 'content-type': 'application/problem+json' });
+	const allow = response.headers.get('allow');
+	if (allow) headers.set('allow', allow);
+	return new Response(
+		JSON.stringify({
+			type: 'about:blank',
+			title: detail,
+			status: response.status,
+			detail,
+			instance: event.locals.requestId
+		}),
+		{ status: response.status, headers }
+	);
+};
+
+/** Errors that nobody expected: logged with the request's id, told without any detail. */
+export const handleError: HandleServerError = ({ error, event, status, message }) => {
+	const { requestId } = event.locals;
+	if (status >= 500) {
+		log.error({ requestId, route: event.route.id, error: loggable(error) }, 'request failed');
+	}
+	const problem = asProblem(error);
+	return {
+		message: problem?.message ?? (status === 404 ? 'There is no such page.' : message),
+		requestId
+	};
+};
+
+/** Runs an API handler and turns its problems into answers. */
+export async function answering(
+	requestId: string,
+	work: () => Promise<Response>
+): Promise<Response> {
+	try {
+		return await work();
+	} catch (error) {
+		const problem = asProblem(error);
+		if (!problem) throw error;
+		return problemResponse(problem, requestId);
+	}
+}

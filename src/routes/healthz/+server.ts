@@ -1,0 +1,4 @@
+import type { RequestHandler } from './$types';
+
+/** Alive: depends on nothing else. */
+export const GET: RequestHandler = () => new Response('alive\n');
