@@ -24,4 +24,6 @@ await runService('worker', async () => {
 	};
 	process.once('SIGTERM', () => void stop());
 	process.once('SIGINT', () => void stop());
+	// Whoever started us is gone.
+	process.once('disconnect', () => void stop());
 });
