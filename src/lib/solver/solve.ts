@@ -81,8 +81,15 @@ function feedCurrents(circuit: Circuit, newton: NewtonResult): Float64Array {
  */
 function residualOf(circuit: Circuit, newton: NewtonResult): number {
 	const { evaluation } = newton;
-	const injected = new Float64Array(circuit.network.nodes.count);
-	const { feeds, regulators, loads } = circuit;
+	const { network, feeds, regulators, loads, held } = circuit;
+	const { voltage } = newton.unknowns;
+	const injected = new Float64Array(network.nodes.count);
+	for (let r = 0; r < network.resistors.count; r++) {
+		const from = network.resistors.from[r];
+		const to = network.resistors.to[r];
+		if (held[from] === 1) injected[to] += voltage[from] / circuit.ohm[r];
+		if (held[to] === 1) injected[from] += voltage[to] / circuit.ohm[r];
+	}
 	for (let f = 0; f < feeds.count; f++) {
 		if (feeds.seriesOhm[f] > 0) injected[feeds.node[f]] += feeds.volts[f] / feeds.seriesOhm[f];
 	}
@@ -94,7 +101,9 @@ function residualOf(circuit: Circuit, newton: NewtonResult): number {
 		injected[loads.node[load]] -= evaluation.loadAmps[load];
 		if (loads.groundNode[load] >= 0) injected[loads.groundNode[load]] += evaluation.loadAmps[load];
 	}
-	const norm = (values: Float64Array) => Math.sqrt(values.reduce((sum, v) => sum + v * v, 0));
+	// Held nodes are no unknowns: their rows are not part of the system.
+	const norm = (values: Float64Array) =>
+		Math.sqrt(values.reduce((sum, v, node) => (held[node] === 1 ? sum : sum + v * v), 0));
 	const size = norm(injected);
 	return size === 0 ? 0 : norm(evaluation.mismatchA) / size;
 }
