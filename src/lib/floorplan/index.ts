@@ -1,5 +1,5 @@
 export type { OutlineUm, PointUm } from './primitives.ts';
-export { MAX_LENGTH_UM, NM_PER_UM } from './primitives.ts';
+export { MAX_LENGTH_UM, NM_PER_UM, onGridUm, toNm } from './primitives.ts';
 export type { Layer, Via } from './layer.ts';
 export type { Net, NetKind, SenseLoop } from './net.ts';
 export type { Strap } from './strap.ts';

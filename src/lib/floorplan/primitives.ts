@@ -6,6 +6,16 @@ export const MAX_LENGTH_UM = 1_000_000;
 /** Nanometres per micrometre: file lengths are multiples of 1 nm. */
 export const NM_PER_UM = 1000;
 
+/** Whole nanometres of a length in um. */
+export function toNm(um: number): number {
+	return Math.round(um * NM_PER_UM);
+}
+
+/** The double nearest to a whole number of nanometres, in um: what parsing a file gives. */
+export function onGridUm(um: number): number {
+	return toNm(um) / NM_PER_UM;
+}
+
 /** Identity of an item, unique within its list: 1 to 64 letters, digits and `_ - . [ ] /`. */
 export const idSchema = z
 	.string()
@@ -27,7 +37,7 @@ export const coordinateUmSchema = z
 	.min(-MAX_LENGTH_UM)
 	.max(MAX_LENGTH_UM)
 	.refine(isOnGrid, 'expected a multiple of 0.001 um')
-	.overwrite((um) => Math.round(um * NM_PER_UM) / NM_PER_UM);
+	.overwrite(onGridUm);
 
 /** A length greater than zero, um. */
 export const lengthUmSchema = coordinateUmSchema.refine(

@@ -1,7 +1,7 @@
 import { isSimplePolygon, signedArea } from '#lib/geometry/index.ts';
 import { ITEM_LISTS, LIST_LENGTHS, type Floorplan, type ItemList } from './document.ts';
 import { itemPath, type Problem } from './problems.ts';
-import type { OutlineUm } from './primitives.ts';
+import { toNm, type OutlineUm } from './primitives.ts';
 
 /**
  * What the shapes of single items cannot say: ids are unique, references lead somewhere of the
@@ -59,10 +59,12 @@ function uniqueIds(floorplan: Floorplan): Problem[] {
 }
 
 function outlineProblem(path: string, outline: OutlineUm): Problem[] {
-	if (!isSimplePolygon(outline)) {
+	// In whole nanometres the test is exact.
+	const outlineNm = outline.map(([x, y]): [number, number] => [toNm(x), toNm(y)]);
+	if (!isSimplePolygon(outlineNm)) {
 		return [{ path, message: 'outline crosses or touches itself (expected a simple polygon)' }];
 	}
-	return signedArea(outline) === 0
+	return signedArea(outlineNm) === 0
 		? [{ path, message: 'outline has no area (expected a polygon with area)' }]
 		: [];
 }

@@ -1,4 +1,4 @@
-import type { Outline } from './polygon.ts';
+import type { Outline } from './point.ts';
 
 /** A piece of a line, from `start` to `end`, along the line's own axis. */
 export type Interval = [start: number, end: number];

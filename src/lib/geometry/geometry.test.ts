@@ -9,6 +9,7 @@ import {
 	orientedSize,
 	orientPoint,
 	polygonContainsBounds,
+	polygonOverlapsBounds,
 	polygonRectangleArea,
 	polygonsOverlap,
 	rectangleOutline,
@@ -17,6 +18,7 @@ import {
 	type Orientation,
 	type Outline
 } from './index.ts';
+import { isOnSegment, segmentsTouch, turn } from './predicates.ts';
 
 const square = rectangleOutline({ minX: 0, minY: 0, maxX: 10, maxY: 10 });
 /** A U open to the top: two arms of width 3 around a gap from x = 3 to 7 above y = 4. */
@@ -103,6 +105,71 @@ describe('isSimplePolygon', () => {
 	});
 });
 
+describe('isSimplePolygon, swept', () => {
+	/** By definition: no two edges share a point, save neighbours their common corner. */
+	function isSimpleByDefinition(outline: Outline): boolean {
+		const n = outline.length;
+		const edge = (i: number) => [outline[i % n], outline[(i + 1) % n]] as const;
+		for (let i = 0; i < n; i++) {
+			const [p, q] = edge(i);
+			const [, after] = edge(i + 1);
+			if (p[0] === q[0] && p[1] === q[1]) return false;
+			// A neighbour that lies on this edge folds back over it.
+			if (isOnSegment(p, q, after) || isOnSegment(q, after, p)) return false;
+			for (let j = i + 2; j < n; j++) {
+				if (i === 0 && j === n - 1) continue;
+				if (segmentsTouch(p, q, ...edge(j))) return false;
+			}
+		}
+		return true;
+	}
+
+	it('agrees with the definition on small grids, where every degenerate case comes up', () => {
+		let simple = 0;
+		fc.assert(
+			fc.property(
+				fc.array(fc.tuple(fc.nat(4), fc.nat(4)), { minLength: 3, maxLength: 7 }),
+				(outline) => {
+					const expected = isSimpleByDefinition(outline);
+					if (expected) simple++;
+					expect(isSimplePolygon(outline)).toBe(expected);
+				}
+			),
+			{ numRuns: 3000 }
+		);
+		expect(simple).toBeGreaterThan(100);
+	});
+
+	it('a comb of 10,000 corners is simple until one tooth reaches over the next', () => {
+		const comb: [number, number][] = [
+			[10_000, 0],
+			[0, 0]
+		];
+		// A sloping ridge of teeth: all edges overlap in y, so that bounds alone tell nothing.
+		for (let k = 0; k < 4999; k++) comb.push([2 * k, 1_000_000 + k], [2 * k + 1, 10]);
+		comb[0] = [2 * 4999, 0];
+		expect(isSimplePolygon(comb)).toBe(true);
+		comb[5000] = [comb[5000][0] + 3, comb[5000][1]];
+		expect(isSimplePolygon(comb)).toBe(false);
+	});
+
+	it('is exact where products leave the range of doubles', () => {
+		// The corner lies one nanometre beside a diagonal of 2 m length, or on it.
+		const big = 999_999_999;
+		const withCorner = (x: number, y: number): Outline => [
+			[-big, -big],
+			[big, big],
+			[big, big + 1],
+			[x, y],
+			[-big, -big + 5]
+		];
+		expect(isSimplePolygon(withCorner(12_345, 12_346))).toBe(true);
+		expect(isSimplePolygon(withCorner(12_345, 12_345))).toBe(false);
+		expect(turn([-big, -big], [big, big - 1], [0, 0])).toBe(1);
+		expect(turn([-big, -big], [big, big], [1, 1])).toBe(0);
+	});
+});
+
 describe('clipLineToPolygon', () => {
 	it('a line through both arms of a U has two parts', () => {
 		expect(clipLineToPolygon(u, 'horizontal', 6)).toEqual([
@@ -182,6 +249,49 @@ describe('polygonsOverlap', () => {
 		expect(polygonsOverlap(b, a)).toBe(expected);
 	});
 
+	it('triangles that share a long diagonal, cut at odd places, only touch', () => {
+		const big = 999_999_937;
+		const lower: Outline = [
+			[0, 0],
+			[3 * big, 0],
+			[3 * big, big]
+		];
+		const upper: Outline = [
+			[0, 0],
+			[3, 1],
+			[3 * big, big],
+			[0, big]
+		];
+		expect(polygonsOverlap(lower, upper)).toBe(false);
+		expect(
+			polygonsOverlap(lower, [
+				[0, 0],
+				[3, 1],
+				[3 * big, big - 1],
+				[0, big]
+			])
+		).toBe(true);
+	});
+
+	it('is symmetric and agrees with the unit cells that triangles share', () => {
+		const triangle = fc
+			.array(fc.tuple(fc.nat(6), fc.nat(6)), { minLength: 3, maxLength: 3 })
+			.filter((corners) => signedArea(corners) !== 0);
+		fc.assert(
+			fc.property(triangle, triangle, (a, b) => {
+				const answer = polygonsOverlap(a, b);
+				expect(polygonsOverlap(b, a)).toBe(answer);
+				// A fine grid of sample points: any that is in both polygons by a margin shows an overlap.
+				const shares = [...Array(61 * 61).keys()].some((k) => {
+					const [x, y] = [(k % 61) / 10 + 0.0137, Math.floor(k / 61) / 10 + 0.0071];
+					return containsPoint(a, x, y) && containsPoint(b, x, y);
+				});
+				if (shares) expect(answer).toBe(true);
+			}),
+			{ numRuns: 200 }
+		);
+	});
+
 	it('agrees with the shared area for rectangles on a grid', () => {
 		const bounds = fc
 			.tuple(fc.nat(8), fc.nat(8), fc.integer({ min: 1, max: 5 }), fc.integer({ min: 1, max: 5 }))
@@ -189,6 +299,7 @@ describe('polygonsOverlap', () => {
 		fc.assert(
 			fc.property(bounds, (b) => {
 				expect(polygonsOverlap(u, rectangleOutline(b))).toBe(polygonRectangleArea(u, b) > 0);
+				expect(polygonOverlapsBounds(u, b)).toBe(polygonRectangleArea(u, b) > 0);
 				expect(polygonContainsBounds(u, b)).toBe(
 					polygonRectangleArea(u, b) === (b.maxX - b.minX) * (b.maxY - b.minY)
 				);

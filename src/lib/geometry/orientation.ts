@@ -1,4 +1,4 @@
-import type { Point } from './polygon.ts';
+import type { Point } from './point.ts';
 
 /**
  * The eight usual orientations: turns to the left by 0 to 270 degrees, a mirror about the x axis

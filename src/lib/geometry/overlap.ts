@@ -1,65 +1,6 @@
-import {
-	boundsOf,
-	boundsOverlap,
-	containsPoint,
-	type Bounds,
-	type Outline,
-	type Point
-} from './polygon.ts';
-
-/** One side of a rectangle as a half plane: keep points with sign * (coordinate - bound) <= 0. */
-type Side = readonly [axis: 0 | 1, bound: number, sign: 1 | -1];
-
-function clipToSide(outline: Outline, [axis, bound, sign]: Side): Point[] {
-	const kept: Point[] = [];
-	for (let i = 0, j = outline.length - 1; i < outline.length; j = i++) {
-		const p = outline[j];
-		const q = outline[i];
-		const pOut = sign * (p[axis] - bound) > 0;
-		const qOut = sign * (q[axis] - bound) > 0;
-		if (pOut !== qOut) {
-			const t = (bound - p[axis]) / (q[axis] - p[axis]);
-			const crossing: [number, number] = [p[0] + t * (q[0] - p[0]), p[1] + t * (q[1] - p[1])];
-			crossing[axis] = bound;
-			kept.push(crossing);
-		}
-		if (!qOut) kept.push(q);
-	}
-	return kept;
-}
-
-/**
- * Area shared by a simple polygon and a rectangle: the polygon is cut by the four half planes
- * (Sutherland and Hodgman, CACM 17 (1974) 32). The bridges that a concave polygon may leave along
- * the rectangle's sides have no area, so the area is exact up to rounding.
- */
-export function polygonRectangleArea(outline: Outline, bounds: Bounds): number {
-	const sides: readonly Side[] = [
-		[0, bounds.minX, -1],
-		[0, bounds.maxX, 1],
-		[1, bounds.minY, -1],
-		[1, bounds.maxY, 1]
-	];
-	let clipped: Outline = outline;
-	for (const side of sides) {
-		clipped = clipToSide(clipped, side);
-		if (clipped.length < 3) return 0;
-	}
-	let twice = 0;
-	for (let i = 0; i < clipped.length; i++) {
-		const [x1, y1] = clipped[i];
-		const [x2, y2] = clipped[(i + 1) % clipped.length];
-		twice += (x1 - bounds.minX) * (y2 - bounds.minY) - (x2 - bounds.minX) * (y1 - bounds.minY);
-	}
-	return Math.abs(twice) / 2;
-}
-
-/** Whether two segments cross at a point inside both. */
-function segmentsCross(a: Point, b: Point, c: Point, d: Point): boolean {
-	const side = (p: Point, q: Point, r: Point) =>
-		(q[0] - p[0]) * (r[1] - p[1]) - (q[1] - p[1]) * (r[0] - p[0]);
-	return side(a, b, c) * side(a, b, d) < 0 && side(c, d, a) * side(c, d, b) < 0;
-}
+import type { Bounds, Outline, Point } from './point.ts';
+import { boundsOf, boundsOverlap, containsPoint } from './polygon.ts';
+import { isOnSegment, segmentEntersBounds, segmentsCross } from './predicates.ts';
 
 /** A point strictly inside a simple polygon: half way over the widest part of a middle section. */
 function innerPoint(outline: Outline): Point {
@@ -85,63 +26,67 @@ function innerPoint(outline: Outline): Point {
 	return best;
 }
 
-function isStrictlyInside(outline: Outline, [x, y]: Point): boolean {
-	if (!containsPoint(outline, x, y)) return false;
-	return outline.every((p, i) => {
+function isStrictlyInside(outline: Outline, p: Point): boolean {
+	if (!containsPoint(outline, p[0], p[1])) return false;
+	return outline.every((corner, i) => !isOnSegment(corner, outline[(i + 1) % outline.length], p));
+}
+
+/** Middles of the pieces into which the corners of the other outline cut the edges. */
+function middles(outline: Outline, other: Outline): Point[] {
+	return outline.flatMap((p, i) => {
 		const q = outline[(i + 1) % outline.length];
-		const cross = (q[0] - p[0]) * (y - p[1]) - (q[1] - p[1]) * (x - p[0]);
-		const isBetween =
-			Math.min(p[0], q[0]) <= x &&
-			x <= Math.max(p[0], q[0]) &&
-			Math.min(p[1], q[1]) <= y &&
-			y <= Math.max(p[1], q[1]);
-		return cross !== 0 || !isBetween;
+		const cuts = [p, ...other.filter((corner) => isOnSegment(p, q, corner)), q];
+		const far = (a: Point) => Math.abs(a[0] - p[0]) + Math.abs(a[1] - p[1]);
+		cuts.sort((a, b) => far(a) - far(b));
+		return cuts
+			.slice(1)
+			.map((cut, k): Point => [(cuts[k][0] + cut[0]) / 2, (cuts[k][1] + cut[1]) / 2]);
 	});
 }
 
-/** Points along each edge between its meetings with the other outline, where inside can be told. */
-function probes(outline: Outline, other: Outline): Point[] {
-	const points: Point[] = [];
-	for (let i = 0; i < outline.length; i++) {
-		const p = outline[i];
-		const q = outline[(i + 1) % outline.length];
-		const cuts = [0, 1];
-		for (const corner of other) {
-			const dx = q[0] - p[0];
-			const dy = q[1] - p[1];
-			if (dx * (corner[1] - p[1]) - dy * (corner[0] - p[0]) !== 0) continue;
-			const t = ((corner[0] - p[0]) * dx + (corner[1] - p[1]) * dy) / (dx * dx + dy * dy);
-			if (t > 0 && t < 1) cuts.push(t);
-		}
-		cuts.sort((a, b) => a - b);
-		for (let k = 0; k + 1 < cuts.length; k++) {
-			const t = (cuts[k] + cuts[k + 1]) / 2;
-			points.push([p[0] + t * (q[0] - p[0]), p[1] + t * (q[1] - p[1])]);
-		}
-		points.push(p);
-	}
-	return points;
+/** Twice the size, so that the middle of two integer points is an integer point. */
+function doubled(outline: Outline): Outline {
+	return outline.map(([x, y]) => [2 * x, 2 * y]);
 }
 
-/** Whether two simple polygons share area; touching along edges or at corners does not count. */
-export function polygonsOverlap(a: Outline, b: Outline): boolean {
-	if (!boundsOverlap(boundsOf(a), boundsOf(b))) return false;
+/**
+ * Whether two simple polygons share area; touching along edges or at corners does not count. Where
+ * no edges cross, every piece of an edge between corners that lie on it is wholly inside, outside
+ * or on the boundary of the other polygon, so its middle tells which. Exact for integer coordinates.
+ */
+export function polygonsOverlap(first: Outline, second: Outline): boolean {
+	if (!boundsOverlap(boundsOf(first), boundsOf(second))) return false;
+	const a = doubled(first);
+	const b = doubled(second);
 	for (let i = 0; i < a.length; i++) {
 		for (let j = 0; j < b.length; j++) {
 			if (segmentsCross(a[i], a[(i + 1) % a.length], b[j], b[(j + 1) % b.length])) return true;
 		}
 	}
 	return (
-		probes(a, b).some((point) => isStrictlyInside(b, point)) ||
-		probes(b, a).some((point) => isStrictlyInside(a, point)) ||
-		isStrictlyInside(b, innerPoint(a)) ||
-		isStrictlyInside(a, innerPoint(b))
+		middles(a, b).some((point) => isStrictlyInside(b, point)) ||
+		middles(b, a).some((point) => isStrictlyInside(a, point)) ||
+		// All boundaries on each other: the same polygon, or two that only touch.
+		isStrictlyInside(b, innerPoint(a))
 	);
 }
 
-/** Whether the rectangle lies wholly in the simple polygon; edges may touch. */
+function entersBounds(outline: Outline, bounds: Bounds): boolean {
+	return outline.some((p, i) => segmentEntersBounds(p, outline[(i + 1) % outline.length], bounds));
+}
+
+/** Whether a polygon holds the middle of a rectangle; where no edge enters it, then all of it. */
+function containsMiddle(outline: Outline, { minX, minY, maxX, maxY }: Bounds): boolean {
+	return containsPoint(outline, (minX + maxX) / 2, (minY + maxY) / 2);
+}
+
+/** Whether the rectangle lies wholly in the simple polygon; edges may touch. Exact for integers. */
 export function polygonContainsBounds(outline: Outline, bounds: Bounds): boolean {
-	const { minX, minY, maxX, maxY } = bounds;
-	const area = (maxX - minX) * (maxY - minY);
-	return polygonRectangleArea(outline, bounds) >= area * (1 - 1e-12);
+	return !entersBounds(outline, bounds) && containsMiddle(outline, bounds);
+}
+
+/** Whether the simple polygon and the rectangle share area; touching does not count. Exact for integers. */
+export function polygonOverlapsBounds(outline: Outline, bounds: Bounds): boolean {
+	if (!boundsOverlap(boundsOf(outline), bounds)) return false;
+	return entersBounds(outline, bounds) || containsMiddle(outline, bounds);
 }

@@ -1,16 +1,5 @@
-/** A point `[x, y]`; x to the right, y up. Any unit, as long as one call uses one. */
-export type Point = readonly [number, number];
-
-/** Corners of a closed polygon in order, the first not repeated at the end. */
-export type Outline = readonly Point[];
-
-/** An axis-aligned rectangle. */
-export interface Bounds {
-	readonly minX: number;
-	readonly minY: number;
-	readonly maxX: number;
-	readonly maxY: number;
-}
+import type { Bounds, Outline, Point } from './point.ts';
+import { isBetween, turn } from './predicates.ts';
 
 /** Smallest rectangle around the outline. */
 export function boundsOf(outline: Outline): Bounds {
@@ -40,22 +29,21 @@ export function signedArea(outline: Outline): number {
 	return twice / 2;
 }
 
-/** Whether the point is inside; the boundary counts as inside. */
+/** Whether the point is inside; the boundary counts as inside. Exact for integer coordinates. */
 export function containsPoint(outline: Outline, x: number, y: number): boolean {
-	let inside = false;
+	let isInside = false;
+	const point: Point = [x, y];
 	for (let i = 0, j = outline.length - 1; i < outline.length; j = i++) {
-		const [xi, yi] = outline[i];
-		const [xj, yj] = outline[j];
-		const cross = (xj - xi) * (y - yi) - (yj - yi) * (x - xi);
-		const isBetween =
-			Math.min(xi, xj) <= x &&
-			x <= Math.max(xi, xj) &&
-			Math.min(yi, yj) <= y &&
-			y <= Math.max(yi, yj);
-		if (cross === 0 && isBetween) return true;
-		if (yi > y !== yj > y && x < ((xj - xi) * (y - yi)) / (yj - yi) + xi) inside = !inside;
+		const p = outline[j];
+		const q = outline[i];
+		const isCrossing = p[1] > y !== q[1] > y;
+		if (!isCrossing && !isBetween(p, q, point)) continue;
+		const side = turn(p, q, point);
+		if (side === 0 && isBetween(p, q, point)) return true;
+		// A ray to the right meets the edge where the point is to the left of it, as seen going up.
+		if (isCrossing && side === (q[1] > p[1] ? 1 : -1)) isInside = !isInside;
 	}
-	return inside;
+	return isInside;
 }
 
 /** Corners of a rectangle, turning left from the lower left. */

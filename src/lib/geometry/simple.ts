@@ -1,71 +1,80 @@
-import type { Outline, Point } from './polygon.ts';
+import type { Outline, Point } from './point.ts';
+import { segmentsTouch, turn } from './predicates.ts';
 
-function turn(a: Point, b: Point, c: Point): number {
-	return Math.sign((b[0] - a[0]) * (c[1] - a[1]) - (b[1] - a[1]) * (c[0] - a[0]));
+/** An edge of the outline, its ends in the order in which the sweep meets them. */
+interface Edge {
+	readonly start: Point;
+	readonly end: Point;
 }
 
-function isOnSegment(a: Point, b: Point, p: Point): boolean {
-	return (
-		Math.min(a[0], b[0]) <= p[0] &&
-		p[0] <= Math.max(a[0], b[0]) &&
-		Math.min(a[1], b[1]) <= p[1] &&
-		p[1] <= Math.max(a[1], b[1])
-	);
+/** Order of the sweep: by x, then by y, as if the sweep line leaned a little to the left. */
+function comesBefore(p: Point, q: Point): boolean {
+	return p[0] < q[0] || (p[0] === q[0] && p[1] < q[1]);
 }
 
-/** Whether the closed segments a-b and c-d share a point. */
-export function segmentsTouch(a: Point, b: Point, c: Point, d: Point): boolean {
-	const abc = turn(a, b, c);
-	const abd = turn(a, b, d);
-	const cda = turn(c, d, a);
-	const cdb = turn(c, d, b);
-	if (abc !== abd && cda !== cdb) return true;
-	return (
-		(abc === 0 && isOnSegment(a, b, c)) ||
-		(abd === 0 && isOnSegment(a, b, d)) ||
-		(cda === 0 && isOnSegment(c, d, a)) ||
-		(cdb === 0 && isOnSegment(c, d, b))
-	);
+/** First place in the status whose edge does not lie below p, or with `orThrough`, not below or through it. */
+function place(status: readonly Edge[], p: Point, orThrough: boolean): number {
+	let low = 0;
+	let high = status.length;
+	while (low < high) {
+		const middle = (low + high) >> 1;
+		const side = turn(status[middle].start, status[middle].end, p);
+		if (side > 0 || (orThrough && side === 0)) low = middle + 1;
+		else high = middle;
+	}
+	return low;
 }
 
-/** An edge folds back where it reverses over the edge before it. */
-function foldsBack(before: Point, corner: Point, after: Point): boolean {
-	const dot =
-		(corner[0] - before[0]) * (after[0] - corner[0]) +
-		(corner[1] - before[1]) * (after[1] - corner[1]);
-	return turn(before, corner, after) === 0 && dot < 0;
+function haveCommonEnd(a: Edge, b: Edge): boolean {
+	return a.start === b.start || a.start === b.end || a.end === b.start || a.end === b.end;
+}
+
+function areInConflict(a: Edge | undefined, b: Edge | undefined): boolean {
+	if (!a || !b || haveCommonEnd(a, b)) return false;
+	return segmentsTouch(a.start, a.end, b.start, b.end);
 }
 
 /**
- * Whether the outline neither crosses nor touches itself and has no edge of length zero. Edges are
- * swept by their left ends, so that only edges whose x ranges overlap are compared.
+ * Whether the outline neither crosses nor touches itself and has no edge of length zero. A plane
+ * sweep (Shamos and Hoey, Proc. 17th FOCS (1976) 208): edges in the order in which they lie over
+ * each other at the sweep line, each pair of neighbours tested when it comes to be; at each corner
+ * the only edges through it may be those that end there. Exact for integer coordinates.
  */
 export function isSimplePolygon(outline: Outline): boolean {
 	const n = outline.length;
 	if (n < 3) return false;
-	const corner = (i: number) => outline[i % n];
-	for (let i = 0; i < n; i++) {
-		const [x1, y1] = corner(i);
-		const [x2, y2] = corner(i + 1);
-		if (x1 === x2 && y1 === y2) return false;
-		if (foldsBack(corner(i), corner(i + 1), corner(i + 2))) return false;
-	}
-	const edges = Array.from({ length: n }, (_, i) => ({
-		i,
-		left: Math.min(corner(i)[0], corner(i + 1)[0]),
-		right: Math.max(corner(i)[0], corner(i + 1)[0])
-	})).sort((a, b) => a.left - b.left);
-	let open: typeof edges = [];
-	for (const edge of edges) {
-		open = open.filter((other) => other.right >= edge.left);
-		for (const other of open) {
-			const apart = Math.abs(edge.i - other.i);
-			if (apart === 1 || apart === n - 1) continue;
-			if (segmentsTouch(corner(edge.i), corner(edge.i + 1), corner(other.i), corner(other.i + 1))) {
-				return false;
-			}
+	const edges = outline.map((p, i): Edge => {
+		const q = outline[(i + 1) % n];
+		return comesBefore(p, q) ? { start: p, end: q } : { start: q, end: p };
+	});
+	const order = Array.from({ length: n }, (_, i) => i).sort(
+		(i, j) => outline[i][0] - outline[j][0] || outline[i][1] - outline[j][1]
+	);
+	/** Edges that the sweep line cuts, from the lowest up. */
+	const status: Edge[] = [];
+	let last: Point | null = null;
+	for (const i of order) {
+		const corner = outline[i];
+		if (last && last[0] === corner[0] && last[1] === corner[1]) return false;
+		last = corner;
+		const around = [edges[(i + n - 1) % n], edges[i]];
+		const ending = around.filter((edge) => edge.end === corner);
+		const starting = around.filter((edge) => edge.start === corner);
+		if (starting.length === 2) {
+			const side = turn(corner, starting[0].end, starting[1].end);
+			if (side === 0) return false;
+			if (side < 0) starting.reverse();
 		}
-		open.push(edge);
+		const from = place(status, corner, false);
+		const to = place(status, corner, true);
+		const through = status.slice(from, to);
+		if (through.length !== ending.length || !through.every((edge) => ending.includes(edge))) {
+			return false;
+		}
+		status.splice(from, through.length, ...starting);
+		const above = from + starting.length;
+		if (areInConflict(status[from - 1], status[from])) return false;
+		if (starting.length > 0 && areInConflict(status[above - 1], status[above])) return false;
 	}
 	return true;
 }

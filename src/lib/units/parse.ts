@@ -5,6 +5,9 @@ export type QuantityResult =
 
 const NUMBER = /^[+-]?(?:\d+(?:\.\d*)?|\.\d+)(?:[eE][+-]?\d+)?/;
 
+/** No quantity needs more; messages repeat what was typed. */
+const MOST_CHARACTERS = 60;
+
 /** Factors of length units to micrometres. */
 const LENGTHS: Readonly<Record<string, number>> = {
 	'': 1,
@@ -60,15 +63,18 @@ function suffixFactor(suffix: string, unit: Unit): number | undefined {
 export function parseQuantity(text: string, unit: Unit): QuantityResult {
 	const trimmed = text.trim().replace(/[−–]/g, '-');
 	if (trimmed === '') return refuse('enter a number');
+	if (trimmed.length > MOST_CHARACTERS) return refuse('the text is too long for a number');
 	if (/\d,\d/.test(trimmed)) return refuse('use a point for decimals and no thousands marks');
-	if (/\d[\s'_]\d/.test(trimmed)) return refuse('write the digits without gaps');
+	if (/\d[\s'’_]\d/.test(trimmed)) return refuse('write the digits without gaps');
 	const number = NUMBER.exec(trimmed)?.[0];
 	if (!number) return refuse(`"${trimmed}" does not start with a number`);
 	const suffix = trimmed.slice(number.length).trim();
 	const factor = suffixFactor(suffix, unit);
 	if (factor === undefined) return refuse(`"${suffix}" is not a unit that fits here`);
 	const value = scale(number, factor);
-	return Number.isFinite(value) ? { ok: true, value } : refuse('the number is too large');
+	if (!Number.isFinite(value)) return refuse('the number is too large');
+	if (value === 0 && /[1-9]/.test(number.split(/e/i)[0])) return refuse('the number is too small');
+	return { ok: true, value };
 }
 
 /** number * factor, moved in decimal so that "800 m" is exactly the double nearest 0.8. */

@@ -24,7 +24,11 @@ describe('parseQuantity', () => {
 		['12 %', 'fraction', 0.12],
 		['0.12', 'fraction', 0.12],
 		['85 °C', 'degC', 85],
-		['-40', 'degC', -40]
+		['-40', 'degC', -40],
+		['0', 'V', 0],
+		['0e-400', 'V', 0],
+		['+3', 'V', 3],
+		['40 nF', 'F', 4e-8]
 	])('%j in %s is %d', (text, unit, value) => {
 		expect(parseQuantity(text, unit)).toEqual({ ok: true, value });
 	});
@@ -38,6 +42,19 @@ describe('parseQuantity', () => {
 		['NaN', 'V', /does not start with a number/],
 		['Infinity', 'V', /does not start with a number/],
 		['1e999', 'V', /too large/],
+		['1e308 k', 'V', /not a unit|too large/],
+		['-1e400', 'V', /too large/],
+		['1e-400', 'V', /too small/],
+		['1’000', 'V', /without gaps/],
+		['1\u00a0000', 'V', /without gaps/],
+		['1.000,5', 'V', /point for decimals/],
+		['1,', 'V', /not a unit/],
+		[',5', 'V', /does not start/],
+		['0x10', 'V', /not a unit/],
+		['1e', 'V', /not a unit/],
+		['--1', 'V', /does not start/],
+		['٣', 'V', /does not start/],
+		['9'.repeat(1000), 'V', /too long/],
 		['5 mA', 'V', /not a unit/],
 		['5 V', 'um', /not a unit/],
 		['5 x', '1', /not a unit/],

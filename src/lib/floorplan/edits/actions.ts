@@ -1,4 +1,4 @@
-import { NM_PER_UM, type OutlineUm } from '../primitives.ts';
+import { onGridUm, type OutlineUm } from '../primitives.ts';
 import type { Floorplan, ItemList, ItemOf } from '../document.ts';
 import type { Edit, Item, Operation, Property } from './operation.ts';
 
@@ -51,7 +51,7 @@ export function findItem<L extends ItemList>(
 }
 
 function addUm(um: number, distanceUm: number): number {
-	return Math.round((um + distanceUm) * NM_PER_UM) / NM_PER_UM;
+	return onGridUm(um + distanceUm);
 }
 
 function moveOutline(outline: OutlineUm, dxUm: number, dyUm: number): OutlineUm {

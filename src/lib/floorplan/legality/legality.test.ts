@@ -58,6 +58,28 @@ describe('checkPlacement', () => {
 		expect(codesAt(5, 5, { keepouts: [{ ...keepouts[0], forbids: ['straps'] }] })).toEqual([]);
 	});
 
+	it('decimal fractions that only touch do not overlap', () => {
+		// 0.1 + 0.2 is more than 0.3 in doubles.
+		const cells = [{ ...example.cells[0], widthUm: 0.2, heightUm: 0.2 }];
+		const [first] = example.regulators;
+		const regulators = [first, { ...first, id: 'R2', xUm: 0.3, yUm: 0.1 }];
+		const keepouts: Floorplan['keepouts'] = [
+			{
+				id: 'left',
+				outline: [
+					[0, 0.3],
+					[0.4, 0.3],
+					[0.4, 0.7]
+				],
+				forbids: ['regulators']
+			}
+		];
+		const changes = { cells, regulators, keepouts, limits: {}, sites: undefined };
+		expect(codesAt(0.1, 0.1, changes)).toEqual([]);
+		expect(codesAt(0.101, 0.1, changes)).toEqual(['overlap']);
+		expect(codesAt(0.1, 0.101, changes)).toEqual(['keep-out']);
+	});
+
 	it('units that move along are ignored', () => {
 		const index = buildPlacementIndex(example);
 		const onR2 = { ...example.regulators[0], xUm: 130, yUm: 45 };

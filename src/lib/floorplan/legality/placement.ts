@@ -4,10 +4,13 @@ import {
 	boundsOverlap,
 	orientedSize,
 	polygonContainsBounds,
-	polygonRectangleArea,
-	type Bounds
+	polygonOverlapsBounds,
+	type Bounds,
+	type Outline
 } from '#lib/geometry/index.ts';
 import type { Floorplan } from '../document.ts';
+import type { Keepout } from '../keepout.ts';
+import { onGridUm, toNm, type OutlineUm } from '../primitives.ts';
 import type { Regulator } from '../regulator.ts';
 
 /** Why a regulator may not stand where it stands. */
@@ -28,13 +31,18 @@ export interface PlacementIndex {
 	readonly floorplan: Floorplan;
 	readonly cells: ReadonlyMap<string, Floorplan['cells'][number]>;
 	readonly footprints: RBush<Footprint>;
-	readonly keepouts: readonly (Floorplan['keepouts'][number] & { readonly bounds: Bounds })[];
+	readonly keepouts: readonly (Keepout & {
+		readonly bounds: Bounds;
+		readonly outlineNm: Outline;
+	})[];
+	/** The die outline in whole nanometres, in which containment is exact. */
+	readonly dieNm: Outline;
 }
 
-/** Site offsets below this are rounding, um. */
-const SITE_TOLERANCE_UM = 1e-6;
+/** Gaps closer to the limit than this are rounding, um. */
+const GAP_TOLERANCE_UM = 1e-6;
 
-/** Rectangle that a regulator covers, um; null where its cell is not defined. */
+/** Rectangle that a regulator covers, um on the nanometre grid; null where its cell is not defined. */
 export function footprintOf(
 	cells: PlacementIndex['cells'],
 	{ cell: cellId, xUm, yUm, orient }: Pick<Regulator, 'cell' | 'xUm' | 'yUm' | 'orient'>
@@ -42,7 +50,11 @@ export function footprintOf(
 	const cell = cells.get(cellId);
 	if (!cell) return null;
 	const [width, height] = orientedSize(cell.widthUm, cell.heightUm, orient);
-	return { minX: xUm, minY: yUm, maxX: xUm + width, maxY: yUm + height };
+	return { minX: xUm, minY: yUm, maxX: onGridUm(xUm + width), maxY: onGridUm(yUm + height) };
+}
+
+function outlineNm(outline: OutlineUm): Outline {
+	return outline.map(([x, y]) => [toNm(x), toNm(y)]);
 }
 
 export function buildPlacementIndex(floorplan: Floorplan): PlacementIndex {
@@ -56,8 +68,12 @@ export function buildPlacementIndex(floorplan: Floorplan): PlacementIndex {
 	);
 	const keepouts = floorplan.keepouts
 		.filter(({ forbids }) => forbids.includes('regulators'))
-		.map((keepout) => ({ ...keepout, bounds: boundsOf(keepout.outline) }));
-	return { floorplan, cells, footprints, keepouts };
+		.map((keepout) => ({
+			...keepout,
+			bounds: boundsOf(keepout.outline),
+			outlineNm: outlineNm(keepout.outline)
+		}));
+	return { floorplan, cells, footprints, keepouts, dieNm: outlineNm(floorplan.die.outline) };
 }
 
 /** Gap between two rectangles that do not overlap, um. */
@@ -68,8 +84,7 @@ function gapUm(a: Bounds, b: Bounds): number {
 }
 
 function isOffPitch(um: number, originUm: number, pitchUm: number): boolean {
-	const steps = (um - originUm) / pitchUm;
-	return Math.abs(steps - Math.round(steps)) * pitchUm > SITE_TOLERANCE_UM;
+	return (toNm(um) - toNm(originUm)) % toNm(pitchUm) !== 0;
 }
 
 /**
@@ -85,8 +100,14 @@ export function checkPlacement(
 	const { floorplan, cells, footprints, keepouts } = index;
 	const bounds = footprintOf(cells, regulator);
 	if (!bounds) return [{ code: 'no-cell', message: `cell ${regulator.cell} is not defined` }];
+	const boundsNm = {
+		minX: toNm(bounds.minX),
+		minY: toNm(bounds.minY),
+		maxX: toNm(bounds.maxX),
+		maxY: toNm(bounds.maxY)
+	};
 	const reasons: PlacementReason[] = [];
-	if (!polygonContainsBounds(floorplan.die.outline, bounds)) {
+	if (!polygonContainsBounds(index.dieNm, boundsNm)) {
 		reasons.push({ code: 'outside-die', message: 'reaches beyond the die outline' });
 	}
 	const { sites } = floorplan;
@@ -100,7 +121,7 @@ export function checkPlacement(
 	for (const keepout of keepouts) {
 		if (
 			boundsOverlap(bounds, keepout.bounds) &&
-			polygonRectangleArea(keepout.outline, bounds) > 0
+			polygonOverlapsBounds(keepout.outlineNm, boundsNm)
 		) {
 			const name = keepout.name ?? keepout.id;
 			reasons.push({ code: 'keep-out', message: `stands in keep-out ${name}`, other: keepout.id });
@@ -117,7 +138,7 @@ export function checkPlacement(
 		if (other.id === regulator.id || ignore.has(other.id)) continue;
 		if (boundsOverlap(bounds, other)) {
 			reasons.push({ code: 'overlap', message: `overlaps ${other.id}`, other: other.id });
-		} else if (gapUm(bounds, other) < spacingUm - SITE_TOLERANCE_UM) {
+		} else if (gapUm(bounds, other) < spacingUm - GAP_TOLERANCE_UM) {
 			const gap = Math.round(gapUm(bounds, other) * 1000) / 1000;
 			reasons.push({
 				code: 'spacing',
@@ -143,8 +164,8 @@ export function checkAllPlacements(
 export function snapToSite(floorplan: Floorplan, xUm: number, yUm: number): [number, number] {
 	const { sites } = floorplan;
 	const snap = (um: number, originUm: number, pitchUm: number) =>
-		Math.round((originUm + Math.round((um - originUm) / pitchUm) * pitchUm) * 1000) / 1000;
-	if (!sites) return [Math.round(xUm * 1000) / 1000, Math.round(yUm * 1000) / 1000];
+		onGridUm(originUm + Math.round((um - originUm) / pitchUm) * pitchUm);
+	if (!sites) return [onGridUm(xUm), onGridUm(yUm)];
 	return [
 		snap(xUm, sites.originUm[0], sites.pitchUm[0]),
 		snap(yUm, sites.originUm[1], sites.pitchUm[1])
