@@ -116,7 +116,7 @@ export function makeDemoFloorplan(seed: number = DEMO_SEED): Floorplan {
 		],
 		modes: [
 			{ id: 'typical', name: 'Typical use' },
-			{ id: 'burst', name: 'Burst, low battery', inputVolts: { vin: 1.3 } },
+			{ id: 'burst', name: 'Burst, low battery', inputVolts: { vin: 1.254 } },
 			{ id: 'memtest', name: 'Memory test' },
 			{ id: 'sleep', name: 'Sleep', inputVolts: { vin: 1.45 } }
 		],
@@ -140,11 +140,11 @@ export function makeDemoFloorplan(seed: number = DEMO_SEED): Floorplan {
 			}
 		],
 		limits: {
-			dropV: 0.045,
+			dropV: 0.038,
 			riseV: 0.03,
 			regulatorLoad: 0.95,
 			belowMinA: 'flag',
-			headroomV: 0.01,
+			headroomV: 0.004,
 			strapLoad: 1,
 			viaLoad: 1,
 			feedLoad: 0.8,
