@@ -57,8 +57,6 @@ export interface NewtonResult {
 	readonly relative: number;
 	readonly steps: number;
 	readonly iterations: number;
-	/** Loops without a unit that follows them. */
-	readonly powerless: readonly boolean[];
 }
 
 /** Leak of every unit; a part all of whose units are flat without a leak is lent a small one. */
@@ -123,7 +121,6 @@ export function solveStage(
 	if (options.startLinear === true) piece.fill(PIECE_REGULATING);
 	let solver: PortSolver | null = null;
 	let solverKey = '';
-	let powerless: readonly boolean[] = circuit.senses.map(() => false);
 	let pivoting = options.pivotOnly === true;
 	const seen = new Set<string>();
 	let steps = 0;
@@ -133,7 +130,7 @@ export function solveStage(
 	const finish = (status: NewtonResult['status']): NewtonResult => {
 		const at = status === 'converged' ? { unknowns, evaluation } : best;
 		const relative = relativeOf(circuit, at.evaluation);
-		return { status, ...at, relative, steps, iterations, powerless };
+		return { status, ...at, relative, steps, iterations };
 	};
 	/** Ends where rounding is all that is left. */
 	const finishAtBest = (): NewtonResult => {
@@ -159,7 +156,7 @@ export function solveStage(
 			if (solver === null) return finishAtBest();
 			solverKey = key;
 		}
-		powerless = solver.powerless;
+		const { powerless } = solver;
 		const targets = loopTargets(circuit, unknowns, evaluation.senseErrorV, loop, powerless);
 		const { step, iterations: inner } = solveLinearised(
 			circuit,

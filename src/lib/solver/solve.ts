@@ -19,6 +19,7 @@ import type {
 import type { Answer } from './answer.ts';
 import { powerBalance, regulatorLosses } from './power.ts';
 import { proveAnswer, stateOf } from './proof.ts';
+import { PIECE_REGULATING } from './regulator-law.ts';
 import { solveFromStarts } from './start.ts';
 
 /** What the contract asks of every result. */
@@ -130,7 +131,10 @@ function senseWarnings(circuit: Circuit, newton: NewtonResult): SolveWarning[] {
 		const stands =
 			`the slow loop stands at the end of its range, ` +
 			`${(answer.correctionV * 1000).toPrecision(4)} mV; ${rest}`;
-		return newton.powerless[s]
+		const followed = circuit.regulators.sense.some(
+			(sense, k) => sense === s && newton.evaluation.piece[k] === PIECE_REGULATING
+		);
+		return !followed
 			? [
 					{
 						code: 'sense-powerless',
