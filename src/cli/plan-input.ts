@@ -1,6 +1,6 @@
 /** What `solve` and `netlist` share: reading the plan, picking mode and corner, reporting errors. */
 import { readFile } from 'node:fs/promises';
-import { parseFloorplan } from '#lib/floorplan/index.ts';
+import { parseFloorplanText } from '#lib/floorplan/index.ts';
 import type { Corner, Floorplan, Mode } from '#lib/floorplan/index.ts';
 
 /** Exit codes of the command line (model section 9). */
@@ -23,11 +23,12 @@ export type PlanRead = { readonly status: 'read'; readonly floorplan: Floorplan 
 export type ConditionsPicked =
 	{ readonly status: 'picked'; readonly mode: Mode; readonly corner: Corner } | Refused;
 
-/** One line per problem, `path: message`. */
+/** One line per problem, `path: message`; what concerns the whole document bears the file's name. */
 export function problemLines(
-	problems: readonly { readonly path: string; readonly message: string }[]
+	problems: readonly { readonly path: string; readonly message: string }[],
+	file = 'document'
 ): string[] {
-	return problems.map(({ path, message }) => (path === '' ? message : `${path}: ${message}`));
+	return problems.map(({ path, message }) => `${path || file}: ${message}`);
 }
 
 function reasonOf(error: unknown): string {
@@ -55,20 +56,10 @@ export async function readPlan(path: string): Promise<PlanRead> {
 	} catch (error) {
 		return { status: 'refused', lines: [`${path}: ${fileProblem(error)}`] };
 	}
-	let value: unknown;
-	try {
-		value = JSON.parse(text.replace(/^\uFEFF/, ''));
-	} catch (error) {
-		const reason = reasonOf(error);
-		return {
-			status: 'refused',
-			lines: [`${path}: is not JSON: ${reason} (expected one JSON document)`]
-		};
-	}
-	const parsed = parseFloorplan(value);
+	const parsed = parseFloorplanText(text);
 	return parsed.status === 'parsed'
 		? { status: 'read', floorplan: parsed.floorplan }
-		: { status: 'refused', lines: problemLines(parsed.problems) };
+		: { status: 'refused', lines: problemLines(parsed.problems, path) };
 }
 
 function pick<T extends { readonly id: string }>(

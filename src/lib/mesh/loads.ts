@@ -1,4 +1,4 @@
-import { NM_PER_UM } from '#lib/floorplan/index.ts';
+import { NM_PER_UM, toNm } from '#lib/floorplan/index.ts';
 import type { Block } from '#lib/floorplan/index.ts';
 import { boundsOf } from '#lib/geometry/index.ts';
 import type { Components } from './components.ts';
@@ -7,7 +7,7 @@ import { IntBuffer } from './int-buffer.ts';
 import { NearestPoint } from './nearest-point.ts';
 import type { ModelProblem, ModelWarning, NetworkLoads } from './network.ts';
 import type { Numbering } from './nodes.ts';
-import { indexOfId, toNm, type PlanIndex } from './plan-index.ts';
+import { indexOfId, type PlanIndex } from './plan-index.ts';
 import type { Points } from './points.ts';
 import type { Runs } from './runs.ts';
 import { BlockSpreader, type SpreadTarget } from './spread.ts';

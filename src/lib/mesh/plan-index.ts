@@ -1,4 +1,4 @@
-import { NM_PER_UM } from '#lib/floorplan/index.ts';
+import { toNm } from '#lib/floorplan/index.ts';
 import type { Floorplan, OutlineUm } from '#lib/floorplan/index.ts';
 import type { Outline } from '#lib/geometry/index.ts';
 
@@ -26,11 +26,6 @@ export interface PlanIndex {
 	readonly patterns: readonly StrapPattern[];
 	/** Index of the ground net, or -1 where the ground is ideal. */
 	readonly groundNet: number;
-}
-
-/** Micrometres of a document as whole nanometres. */
-export function toNm(um: number): number {
-	return Math.round(um * NM_PER_UM);
 }
 
 /** An outline in whole nanometres. */

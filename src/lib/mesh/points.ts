@@ -1,7 +1,8 @@
+import { toNm } from '#lib/floorplan/index.ts';
 import { MAX_NODES, PIECES_WITHOUT_CROSSINGS } from './constants.ts';
 import type { Crossings } from './crossings.ts';
 import type { ModelProblem } from './network.ts';
-import { toNm, type PlanIndex } from './plan-index.ts';
+import { type PlanIndex } from './plan-index.ts';
 import type { Runs } from './runs.ts';
 import { lowerBound } from './search.ts';
 import type { TapList, Taps } from './taps.ts';

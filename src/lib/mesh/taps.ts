@@ -1,9 +1,9 @@
-import { NM_PER_UM } from '#lib/floorplan/index.ts';
+import { NM_PER_UM, toNm } from '#lib/floorplan/index.ts';
 import type { Regulator } from '#lib/floorplan/index.ts';
 import { orientPoint } from '#lib/geometry/index.ts';
 import { nearestRun } from './nearest-run.ts';
 import type { ModelProblem, ModelWarning } from './network.ts';
-import { indexOfId, toNm, type PlanIndex } from './plan-index.ts';
+import { indexOfId, type PlanIndex } from './plan-index.ts';
 import type { Runs } from './runs.ts';
 
 /** Where feeds or pins join: one entry per item, run -1 where there is nothing to join. */

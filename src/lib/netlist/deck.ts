@@ -15,7 +15,10 @@ function feedVolts(floorplan: Floorplan, netId: string, mode: Mode): number {
 	return mode.inputVolts?.[netId] ?? net.volts;
 }
 
-/** Feeds: an ideal source behind a resistor, or alone where it holds its node. */
+/**
+ * Feeds: the net's ideal source, one for all of them, behind each feed's resistor; a ground feed's
+ * source is node 0. Without a resistor a source of its own holds the node.
+ */
 function feedLines(
 	floorplan: Floorplan,
 	network: Network,
@@ -23,24 +26,28 @@ function feedLines(
 	names: readonly string[]
 ): string[] {
 	const ids = safeIds(floorplan.feeds);
+	const netIds = safeIds(floorplan.nets);
 	const holder = new Map<number, string>();
-	return floorplan.feeds.flatMap((feed, f) => {
+	const sources = floorplan.nets.flatMap((net, n) =>
+		net.kind === 'input' && floorplan.feeds.some((feed) => feed.net === net.id)
+			? [`vs_${netIds[n]} s_${netIds[n]} 0 ${feedVolts(floorplan, net.id, mode)}`]
+			: []
+	);
+	const feeds = floorplan.feeds.flatMap((feed, f) => {
 		const node = network.feeds.node[f];
 		const comment = `* feed ${feed.id}`;
 		if (node < 0) return [`${comment}: joins no strap`];
-		const volts = feedVolts(floorplan, feed.net, mode);
+		const net = network.nodes.net[node];
 		if (feed.seriesOhm > 0) {
-			return [
-				comment,
-				`vf_${ids[f]} f_${ids[f]} 0 ${volts}`,
-				`rf_${ids[f]} f_${ids[f]} ${names[node]} ${feed.seriesOhm}`
-			];
+			const source = network.nets[net].kind === 'ground' ? '0' : `s_${netIds[net]}`;
+			return [comment, `rf_${ids[f]} ${source} ${names[node]} ${feed.seriesOhm}`];
 		}
 		const held = holder.get(node);
 		if (held !== undefined) return [`${comment}: its node is already held by feed ${held}`];
 		holder.set(node, feed.id);
-		return [comment, `vf_${ids[f]} ${names[node]} 0 ${volts}`];
+		return [comment, `vf_${ids[f]} ${names[node]} 0 ${feedVolts(floorplan, feed.net, mode)}`];
 	});
+	return [...sources, ...feeds];
 }
 
 function resistorLines(network: Network, ohm: Float64Array, names: readonly string[]): string[] {
@@ -53,26 +60,20 @@ function resistorLines(network: Network, ohm: Float64Array, names: readonly stri
 }
 
 /**
- * Where a simulator starts: nominal volts on every node that carries a load or a pin. Loads follow
- * their voltage, so that from 0 V a simulator would find the collapsed answer first.
+ * Where a simulator starts: nominal volts where a load follows its voltage, because from 0 V it
+ * would find the collapsed answer first, and no correction by the slow loops, whose equations have
+ * nothing to hold on to while their sense points are set.
  */
 function startLines(
-	floorplan: Floorplan,
-	network: Network,
-	mode: Mode,
+	{ nodes, nets }: Network,
+	followed: readonly number[],
+	correctionNodes: readonly string[],
 	names: readonly string[]
 ): string[] {
-	const { loads, regulators, nodes, nets } = network;
-	const wanted = new Set<number>();
-	for (let load = 0; load < loads.count; load++) wanted.add(loads.node[load]);
-	for (const node of regulators.outputNode) if (node >= 0) wanted.add(node);
-	for (const node of regulators.inputNode) if (node >= 0) wanted.add(node);
-	const volts = nets.map((net) =>
-		net.kind === 'input' ? feedVolts(floorplan, net.id, mode) : net.volts
-	);
-	return [...wanted]
-		.sort((a, b) => a - b)
-		.map((node) => `.nodeset v(${names[node]})=${volts[nodes.net[node]]}`);
+	return [
+		...followed.map((node) => `.nodeset v(${names[node]})=${nets[nodes.net[node]].volts}`),
+		...correctionNodes.map((u) => `.nodeset v(${u})=0`)
+	];
 }
 
 /** One line of text: what people typed may hold line breaks. */
@@ -108,6 +109,7 @@ export function writeDeck(
 	if (scaled.status === 'refused') return scaled;
 	const { names, comments } = nodeNames(floorplan, network);
 	const loops = senseLines(floorplan, network, names);
+	const loads = loadLines(floorplan, network, mode, corner, names);
 	const sections = [
 		headLines(floorplan, mode, corner),
 		comments,
@@ -119,9 +121,9 @@ export function writeDeck(
 		regulatorLines(floorplan, network, corner, names, loops.correctionNode),
 		loops.lines,
 		['* Loads'],
-		loadLines(floorplan, network, mode, corner, names),
+		loads.lines,
 		['* Start of the search for the operating point'],
-		startLines(floorplan, network, mode, names),
+		startLines(network, loads.followed, [...loops.correctionNode.values()], names),
 		['.options reltol=1e-9 abstol=1e-12 vntol=1e-10 gmin=1e-15 itl1=500 numdgt=15', '.op', '.end']
 	];
 	const deck = sections.map((lines) => lines.map((line) => `${line}\n`).join('')).join('');

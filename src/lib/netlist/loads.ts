@@ -5,42 +5,65 @@ import { voltageOf } from './regulators.ts';
 /** Below this fraction of nominal a load's law is continued linearly to zero (model section 4.3). */
 const COLLAPSE_FRACTION = 0.1;
 
+/**
+ * Nodes up to which constant-current loads carry their law below a tenth of nominal. Such a load
+ * follows the voltage between its rail and its ground, which couples two grids at every load: on a
+ * large network a general simulator's factor then grows from seconds to hours, for a law that
+ * applies only to blocks that have collapsed.
+ */
+export const MAX_NODES_WITH_COLLAPSE = 5000;
+
 /** The factor (v / volts)^exponent as an expression of x = v / volts. */
 function power(x: string, exponent: number): string {
 	if (exponent === 0) return '1';
-	if (exponent === 1) return x;
 	if (exponent === -1) return `1/(${x})`;
 	return `pow(${x},${exponent})`;
 }
 
-/** Every attachment of a block's current as a behavioural current source to its local ground. */
+/**
+ * Every attachment of a block's current as a source to its local ground, and the nodes whose
+ * voltage a nonlinear one follows.
+ */
 export function loadLines(
 	floorplan: Floorplan,
 	network: Network,
 	mode: Mode,
 	corner: Corner,
 	names: readonly string[]
-): string[] {
+): { lines: string[]; followed: number[] } {
 	const { loads, nets, nodes } = network;
-	const lines: string[] = [];
+	const hasCollapse = nodes.count <= MAX_NODES_WITH_COLLAPSE;
+	const lines = hasCollapse
+		? []
+		: ['* Constant currents are drawn as such also below a tenth of nominal volts.'];
+	const followed = new Set<number>();
 	let lastBlock = -1;
 	for (let load = 0; load < loads.count; load++) {
 		const block = floorplan.blocks[loads.block[load]];
+		const exponent = block.voltageExponent;
 		const amps = (block.amps[mode.id] ?? 0) * corner.loadScale * loads.share[load];
 		if (amps === 0) continue;
 		if (loads.block[load] !== lastBlock) {
 			lastBlock = loads.block[load];
-			lines.push(`* block ${block.id}, voltage exponent ${block.voltageExponent}`);
+			lines.push(`* block ${block.id}, voltage exponent ${exponent}`);
 		}
 		const node = loads.node[load];
 		const { volts } = nets[nodes.net[node]];
 		const ground = loads.groundNode[load] < 0 ? '0' : names[loads.groundNode[load]];
-		const x = `${voltageOf(names[node], ground)}/(${volts})`;
-		const slope = Math.pow(COLLAPSE_FRACTION, block.voltageExponent - 1);
-		lines.push(
-			`bl${load} ${names[node]} ${ground} ` +
-				`i=(${amps})*(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power(x, block.voltageExponent)})`
-		);
+		const pair = `${names[node]} ${ground}`;
+		if (exponent === 1) {
+			lines.push(`gl${load} ${pair} ${pair} ${amps / volts}`);
+		} else if (exponent === 0 && !hasCollapse) {
+			lines.push(`il${load} ${pair} ${amps}`);
+		} else {
+			followed.add(node);
+			const x = `${voltageOf(names[node], ground)}/(${volts})`;
+			const slope = Math.pow(COLLAPSE_FRACTION, exponent - 1);
+			lines.push(
+				`bl${load} ${pair} ` +
+					`i=(${amps})*(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power(x, exponent)})`
+			);
+		}
 	}
-	return lines;
+	return { lines, followed: [...followed].sort((a, b) => a - b) };
 }
