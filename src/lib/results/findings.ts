@@ -1,8 +1,9 @@
 import type { Floorplan } from '#lib/floorplan/index.ts';
+import { checkAllPlacements, footprintOf } from '#lib/floorplan/legality/index.ts';
 import type { Network } from '#lib/mesh/index.ts';
 import type { OperatingPoint } from '#lib/solver/index.ts';
 import { pieceMiddleUm, type MetalLoads } from './metal-load.ts';
-import { limitsFor, middleOf, netDropLimit } from './readings.ts';
+import { limitsFor, netDropLimit, roundedUm } from './readings.ts';
 import type { BlockResult, FeedResult, Finding, NetResult, RegulatorResult } from './schema.ts';
 
 /** A value must exceed its limit by this much, relatively, to break it: rounding alone does not. */
@@ -111,6 +112,31 @@ function blockFindings({ floorplan, point, blocks }: FindingInputs): Finding[] {
 	});
 }
 
+/** Middle of a regulator's footprint, um; its corner where its cell is not defined. */
+function placeOf(
+	cells: ReadonlyMap<string, Floorplan['cells'][number]>,
+	unit: Floorplan['regulators'][number]
+): [number, number] {
+	const bounds = footprintOf(cells, unit);
+	if (bounds === null) return [unit.xUm, unit.yUm];
+	return roundedUm((bounds.minX + bounds.maxX) / 2, (bounds.minY + bounds.maxY) / 2);
+}
+
+/** One finding per regulator that stands where it may not. */
+function placementFindings({ floorplan }: FindingInputs): Finding[] {
+	const cells = new Map(floorplan.cells.map((cell) => [cell.id, cell]));
+	return checkAllPlacements(floorplan).map(({ regulator, reasons }): Finding => ({
+		kind: 'placement',
+		list: 'regulators',
+		subject: regulator.id,
+		value: reasons.length,
+		limit: 0,
+		unit: '',
+		message: `regulator ${regulator.id} ${reasons.map(({ message }) => message).join('; ')}`,
+		atUm: placeOf(cells, regulator)
+	}));
+}
+
 function regulatorFindings({ floorplan, regulators }: FindingInputs): Finding[] {
 	const cells = new Map(floorplan.cells.map((cell) => [cell.id, cell]));
 	return floorplan.regulators.flatMap((unit, index): Finding[] => {
@@ -121,10 +147,7 @@ function regulatorFindings({ floorplan, regulators }: FindingInputs): Finding[] 
 		const base = {
 			list: 'regulators',
 			subject: unit.id,
-			atUm: middleOf([
-				[unit.xUm, unit.yUm],
-				[unit.xUm + cell.widthUm, unit.yUm + cell.heightUm]
-			])
+			atUm: placeOf(cells, unit)
 		} as const;
 		const found: Finding[] = [];
 		if (exceeds(result.loadFraction, limits.regulatorLoad)) {
@@ -245,6 +268,7 @@ export function listFindings(inputs: FindingInputs): Finding[] {
 		...regulatorFindings(inputs),
 		...feedFindings(inputs),
 		...metalFindings(inputs),
+		...placementFindings(inputs),
 		...shortFindings(inputs)
 	];
 }

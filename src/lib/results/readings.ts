@@ -1,5 +1,5 @@
 import { NM_PER_UM, type Floorplan, type LimitSet } from '#lib/floorplan/index.ts';
-import { boundsOf, containsPoint } from '#lib/geometry/index.ts';
+import { containsPoint } from '#lib/geometry/index.ts';
 import type { Network } from '#lib/mesh/index.ts';
 import type { OperatingPoint } from '#lib/solver/index.ts';
 
@@ -37,12 +37,6 @@ export function nodePositionUm(network: Network, node: number): [number, number]
 /** Rounds a position to 0.001 um. */
 export function roundedUm(xUm: number, yUm: number): [number, number] {
 	return [Math.round(xUm * NM_PER_UM) / NM_PER_UM, Math.round(yUm * NM_PER_UM) / NM_PER_UM];
-}
-
-/** Middle of an outline's bounding box, um. */
-export function middleOf(outline: readonly (readonly [number, number])[]): [number, number] {
-	const { minX, minY, maxX, maxY } = boundsOf(outline);
-	return roundedUm((minX + maxX) / 2, (minY + maxY) / 2);
 }
 
 /** Id of the first block of a net that covers a place, or null. */

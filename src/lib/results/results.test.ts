@@ -31,8 +31,8 @@ function rail(limits: Limits = {}, parts: Partial<FloorplanInput> = {}): Floorpl
 			limits,
 			cells: [cellOf('unit', { outputOhm: 0.05, maxA: 0.4, minA: 0.05 })],
 			regulators: [
-				regulatorAt('r1', 'vdd', 0, 0, { offsetV: 0.005 }),
-				regulatorAt('r2', 'vdd', 0, 40)
+				regulatorAt('r1', 'vdd', 10, 10, { offsetV: 0.005 }),
+				regulatorAt('r2', 'vdd', 10, 30)
 			],
 			blocks: [loadAt('near', 'vdd', 10, 20, 0.05), loadAt('far', 'vdd', 80, 20, 0.3)],
 			...parts
@@ -147,7 +147,7 @@ describe('findings', () => {
 	});
 
 	it('a unit below its stable minimum is a finding only where asked', () => {
-		const parts = { blocks: [loadAt('far', 'vdd', 0, 0, 0.06)] };
+		const parts = { blocks: [loadAt('far', 'vdd', 10, 10, 0.06)] };
 		expect(kinds({ belowMinA: 'allow' }, parts)).toEqual([]);
 		expect(kinds({ belowMinA: 'flag' }, parts)).toEqual(['below-min-current regulators r2']);
 	});
@@ -171,6 +171,11 @@ describe('findings', () => {
 				...result.straps.worst.filter(({ strap }) => strap === 'h').map((s) => s.loadFraction)
 			)
 		);
+	});
+
+	it('a regulator that stands where it may not is solved and found', () => {
+		const found = kinds({}, { sites: { originUm: [0, 0], pitchUm: [5, 5] } });
+		expect(found).toEqual(['placement regulators r1', 'placement regulators r2']);
 	});
 
 	it('a limit that is met exactly is not broken', () => {
