@@ -1,0 +1,13 @@
+export type { Camera } from './camera.ts';
+export { toDie, toScreen, viewOf } from './camera.ts';
+export type { DocumentKeeper, DragPreview, Ghost, Overlay } from './editor.ts';
+export { Editor } from './editor.ts';
+export type { PointerInput } from './input.ts';
+export type { DiePoint, ScreenPoint } from './points.ts';
+export { diePoint, screenPoint } from './points.ts';
+export type { ItemKey } from './selection.ts';
+export { keyOf, referenceOf } from './selection.ts';
+export type { Visibility } from './visibility.ts';
+export { hiddenCount } from './visibility.ts';
+export type { RegulatorTemplate } from './tools/place/placing.ts';
+export { placing } from './tools/place/placing.ts';
