@@ -29,6 +29,8 @@ const MAX_HALVINGS = 12;
 const SUFFICIENT = 1e-4;
 /** Slope lent to the units of a part that floats because all of them are flat. */
 const FLOATING_LEAK = 1e-4;
+/** The same as a part of the slope of the loads there. */
+const BESIDE_LOADS = 1e-3;
 
 export interface NewtonOptions {
 	readonly onStep?: (step: number, relative: number) => void;
@@ -59,21 +61,39 @@ export interface NewtonResult {
 	readonly iterations: number;
 }
 
-/** Leak of every unit; a part all of whose units are flat without a leak is lent a small one. */
+/**
+ * Leak of every unit. A part all of whose units are flat without a leak is lent a small one, which
+ * says which way it drifts; where its loads have a slope of their own, one that is small beside it.
+ */
 function leaksOf(
 	circuit: Circuit,
 	grid: GridFactors,
 	piece: Uint8Array,
-	leak: number
+	leak: number,
+	loadSlope: Float64Array
 ): Float64Array {
-	const units = circuit.regulators;
+	const { regulators: units, loads } = circuit;
+	const leaks = new Float64Array(units.count).fill(leak);
 	const firm = new Set<number>();
 	for (let k = 0; k < units.count; k++) {
 		if (!isFlat(piece[k])) firm.add(grid.part[units.outputNode[k]]);
 	}
-	return Float64Array.from(units.outputNode, (node) =>
-		leak > 0 || firm.has(grid.part[node]) ? leak : FLOATING_LEAK
-	);
+	const floating = Array.from(units.outputNode, (node) => !firm.has(grid.part[node]));
+	if (leak > 0 || !floating.includes(true)) return leaks;
+	const slopeOf = new Map<number, number>();
+	const unitSlopeOf = new Map<number, number>();
+	const add = (to: Map<number, number>, node: number, value: number) =>
+		to.set(grid.part[node], (to.get(grid.part[node]) ?? 0) + Math.abs(value));
+	loads.node.forEach((node, load) => add(slopeOf, node, loadSlope[load]));
+	units.outputNode.forEach((node, k) => add(unitSlopeOf, node, 1 / units.outputOhm[k]));
+	return leaks.map((_, k) => {
+		if (!floating[k]) return 0;
+		const part = grid.part[units.outputNode[k]];
+		const ratio = (slopeOf.get(part) ?? 0) / (unitSlopeOf.get(part) ?? 1);
+		if (ratio === 0) return FLOATING_LEAK;
+		// A power of ten, so that the equations are kept while the loads' slopes move a little.
+		return Math.min(FLOATING_LEAK, 10 ** Math.floor(Math.log10(BESIDE_LOADS * ratio)));
+	});
 }
 
 /** What each loop's equation has to take to zero, V. */
@@ -149,12 +169,13 @@ export function solveStage(
 		const allowance = relative <= ACCEPTED_RELATIVE ? LAST_STEPS : 0;
 		if (steps >= options.maxSteps + allowance) return finishAtBest();
 
-		const leak = leaksOf(circuit, grid, piece, stageLeak);
+		const leak = leaksOf(circuit, grid, piece, stageLeak, evaluation.loadSlope);
 		const key = `${piece.join('')}|${loop.join('')}`;
-		if (solver === null || solverKey !== key) {
+		const fullKey = `${key}|${leak.join(',')}`;
+		if (solver === null || solverKey !== fullKey) {
 			solver = createPortSolver(circuit, grid, piece, leak, loop);
 			if (solver === null) return finishAtBest();
-			solverKey = key;
+			solverKey = fullKey;
 		}
 		const { powerless } = solver;
 		const targets = loopTargets(circuit, unknowns, evaluation.senseErrorV, loop, powerless);
