@@ -124,6 +124,22 @@ export function collapsedShortages(
 		);
 }
 
+/** Nets with loads but without positive volts: a load's law is a fraction of its net's volts. */
+export function voltlessLoads(circuit: Circuit): SolveProblem[] {
+	const { network, loads } = circuit;
+	const nets = new Set(Array.from(loads.node, (node) => network.nodes.net[node]));
+	return [...nets]
+		.filter((net) => !(network.nets[net].volts > 0))
+		.map((net) => {
+			const { id, volts } = network.nets[net];
+			return {
+				path: `nets (${id}).volts`,
+				message: `${volts} V with blocks on the net (expected more than 0 V)`,
+				subject: id
+			};
+		});
+}
+
 /** Voltage that a load attachment sees over its nominal volts. */
 export function seenRatio(circuit: Circuit, voltage: Float64Array, load: number): number {
 	const { loads } = circuit;

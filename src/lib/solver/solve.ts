@@ -1,6 +1,12 @@
 import type { Floorplan } from '#lib/floorplan/index.ts';
 import { resistancesAt, type Network } from '#lib/mesh/index.ts';
-import { collapsedBlocks, collapsedShortages, ratedShortages, seenRatio } from './capacity.ts';
+import {
+	collapsedBlocks,
+	collapsedShortages,
+	ratedShortages,
+	seenRatio,
+	voltlessLoads
+} from './capacity.ts';
 import { buildCircuit, type Circuit } from './circuit.ts';
 import { currentScale } from './evaluation.ts';
 import { createGridCache } from './grid-cache.ts';
@@ -282,6 +288,8 @@ export function solveOperatingPoint(
 	if (scaled.status === 'refused') return { status: 'unsolvable', problems: scaled.problems };
 	const circuit = buildCircuit(floorplan, network, mode, corner, scaled.ohm);
 	const cache = options.cache ?? createGridCache(network);
+	const voltless = voltlessLoads(circuit);
+	if (voltless.length > 0) return { status: 'unsolvable', problems: voltless };
 	const short = ratedShortages(circuit, cache.pattern.part);
 	if (short.length > 0) return { status: 'unsolvable', problems: short };
 	if (shouldStop?.() === true) return { status: 'stopped' };

@@ -29,7 +29,11 @@ export function startingPoint(circuit: Circuit, collapsed: ReadonlySet<number>):
 
 /** Steps of the plain iteration before the way over leaking laws is taken. */
 const PLAIN_STEPS = 25;
-const STAGE_STEPS = 200;
+const STAGE_STEPS = 40;
+/** Steps that a stage gets beyond these for every unit, which may have to change its piece. */
+const STEPS_PER_UNIT = 2;
+/** Steps after which no further start is tried. */
+const MAX_TOTAL_STEPS = 400;
 /** Slopes of the flat pieces on the way to the law itself. */
 const LEAKS = [1e-1, 1e-2, 1e-4, 1e-6];
 /** Mismatch at which a law on the way is left, relative to the load. */
@@ -47,6 +51,7 @@ export function solveNewton(
 	start: Unknowns,
 	options: NewtonOptions & { readonly pivotOnly?: boolean } = {}
 ): NewtonResult {
+	const stageSteps = STAGE_STEPS + STEPS_PER_UNIT * circuit.regulators.count;
 	let steps = 0;
 	let iterations = 0;
 	const counted = (result: NewtonResult): NewtonResult => ({
@@ -76,7 +81,7 @@ export function solveNewton(
 				...options,
 				onStep,
 				leak,
-				maxSteps: STAGE_STEPS,
+				maxSteps: stageSteps,
 				target: STAGE_TARGET,
 				startLinear: at === start && options.pivotOnly !== true,
 				onCycle: 'pivot'
@@ -94,7 +99,7 @@ export function solveNewton(
 			...options,
 			onStep,
 			leak: 0,
-			maxSteps: STAGE_STEPS,
+			maxSteps: stageSteps,
 			onCycle: 'pivot'
 		})
 	);
@@ -127,16 +132,18 @@ export function solveFromStarts(
 	const collapsed = new Set<number>();
 	let result = solveNewton(circuit, grid, startingPoint(circuit, collapsed), options);
 	let best = result;
+	let steps = result.steps;
 	for (let restart = 1; restart <= MAX_RESTARTS && result.status === 'stuck'; restart++) {
 		const candidates = [...lowestRatios(circuit, result.unknowns.voltage)]
 			.filter(([block]) => !collapsed.has(block))
 			.sort((a, b) => a[1] - b[1] || a[0] - b[0]);
-		if (candidates.length === 0) break;
+		if (candidates.length === 0 || steps >= MAX_TOTAL_STEPS) break;
 		candidates.forEach(([block, ratio], rank) => {
 			if (rank === 0 || ratio < SUSPECT_RATIO || restart === MAX_RESTARTS) collapsed.add(block);
 		});
 		result = solveNewton(circuit, grid, startingPoint(circuit, collapsed), options);
+		steps += result.steps;
 		if (result.relative < best.relative || result.status !== 'stuck') best = result;
 	}
-	return best;
+	return { ...best, steps };
 }
