@@ -142,7 +142,7 @@ describe('deck of small plans in a circuit simulator', () => {
 		const ladder = oneNodePlan([1, 1], 0.2, { unit: (k) => ({ input: `vin${k + 1}` }) });
 		const plan = planOf({
 			...ladder,
-			layers: [...ladder.layers, { id: 'm2', direction: 'vertical', sheetOhm: 1e-9 }],
+			layers: [...ladder.layers, { id: 'm2', direction: 'vertical', sheetOhm: 1 }],
 			nets: [
 				...ladder.nets,
 				{ id: 'vin1', kind: 'input', volts: 1.02 },
@@ -209,7 +209,7 @@ describe('deck of small plans in a circuit simulator', () => {
 		});
 		const plan = planOf({
 			...ladder,
-			layers: [...ladder.layers, { id: 'm2', direction: 'vertical', sheetOhm: 1e-9 }],
+			layers: [...ladder.layers, { id: 'm2', direction: 'vertical', sheetOhm: 1 }],
 			nets: [
 				...ladder.nets,
 				{ id: 'vin', kind: 'input', volts: 1.2 },

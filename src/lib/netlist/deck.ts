@@ -59,23 +59,6 @@ function resistorLines(network: Network, ohm: Float64Array, names: readonly stri
 	return lines;
 }
 
-/**
- * Where a simulator starts: nominal volts where a load follows its voltage, because from 0 V it
- * would find the collapsed answer first, and no correction by the slow loops, whose equations have
- * nothing to hold on to while their sense points are set.
- */
-function startLines(
-	{ nodes, nets }: Network,
-	followed: readonly number[],
-	correctionNodes: readonly string[],
-	names: readonly string[]
-): string[] {
-	return [
-		...followed.map((node) => `.nodeset v(${names[node]})=${nets[nodes.net[node]].volts}`),
-		...correctionNodes.map((u) => `.nodeset v(${u})=0`)
-	];
-}
-
 /** One line of text: what people typed may hold line breaks. */
 function oneLine(text: string): string {
 	return text.replace(/\s+/g, ' ').trim();
@@ -109,7 +92,6 @@ export function writeDeck(
 	if (scaled.status === 'refused') return scaled;
 	const { names, comments } = nodeNames(floorplan, network);
 	const loops = senseLines(floorplan, network, names);
-	const loads = loadLines(floorplan, network, mode, corner, names);
 	const sections = [
 		headLines(floorplan, mode, corner),
 		comments,
@@ -121,9 +103,7 @@ export function writeDeck(
 		regulatorLines(floorplan, network, corner, names, loops.correctionNode),
 		loops.lines,
 		['* Loads'],
-		loads.lines,
-		['* Start of the search for the operating point'],
-		startLines(network, loads.followed, [...loops.correctionNode.values()], names),
+		loadLines(floorplan, network, mode, corner, names),
 		['.options reltol=1e-9 abstol=1e-12 vntol=1e-10 gmin=1e-15 itl1=500 numdgt=15', '.op', '.end']
 	];
 	const deck = sections.map((lines) => lines.map((line) => `${line}\n`).join('')).join('');

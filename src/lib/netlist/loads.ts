@@ -13,30 +13,31 @@ const COLLAPSE_FRACTION = 0.1;
  */
 export const MAX_NODES_WITH_COLLAPSE = 5000;
 
-/** The factor (v / volts)^exponent as an expression of x = v / volts. */
-function power(x: string, exponent: number): string {
-	if (exponent === 0) return '1';
-	if (exponent === -1) return `1/(${x})`;
-	return `pow(${x},${exponent})`;
+/**
+ * The current over its nominal as an expression of x = v / volts (model section 4.3). A law that
+ * rises as the voltage falls has a collapsed answer too, which a simulator would find first, since
+ * it starts from 0 V: for x = 0 exactly such a load is given its nominal current.
+ */
+function lawOf(x: string, exponent: number): string {
+	const slope = Math.pow(COLLAPSE_FRACTION, exponent - 1);
+	const power = exponent === 0 ? '1' : `pow(${x},${exponent})`;
+	const law = `(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power})`;
+	return exponent < 0 ? `(${x}==0?1:${law})` : law;
 }
 
-/**
- * Every attachment of a block's current as a source to its local ground, and the nodes whose
- * voltage a nonlinear one follows.
- */
+/** Every attachment of a block's current as a source to its local ground. */
 export function loadLines(
 	floorplan: Floorplan,
 	network: Network,
 	mode: Mode,
 	corner: Corner,
 	names: readonly string[]
-): { lines: string[]; followed: number[] } {
+): string[] {
 	const { loads, nets, nodes } = network;
 	const hasCollapse = nodes.count <= MAX_NODES_WITH_COLLAPSE;
 	const lines = hasCollapse
 		? []
 		: ['* Constant currents are drawn as such also below a tenth of nominal volts.'];
-	const followed = new Set<number>();
 	let lastBlock = -1;
 	for (let load = 0; load < loads.count; load++) {
 		const block = floorplan.blocks[loads.block[load]];
@@ -56,14 +57,9 @@ export function loadLines(
 		} else if (exponent === 0 && !hasCollapse) {
 			lines.push(`il${load} ${pair} ${amps}`);
 		} else {
-			followed.add(node);
 			const x = `${voltageOf(names[node], ground)}/(${volts})`;
-			const slope = Math.pow(COLLAPSE_FRACTION, exponent - 1);
-			lines.push(
-				`bl${load} ${pair} ` +
-					`i=(${amps})*(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power(x, exponent)})`
-			);
+			lines.push(`bl${load} ${pair} i=(${amps})*${lawOf(x, exponent)}`);
 		}
 	}
-	return { lines, followed: [...followed].sort((a, b) => a - b) };
+	return lines;
 }
