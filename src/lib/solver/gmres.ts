@@ -4,6 +4,12 @@ export interface GmresResult {
 	/** norm(b - A x) / norm(b), by the recurrence. */
 	readonly residual: number;
 	readonly converged: boolean;
+	/**
+	 * The answer as a sum over the vectors that `multiply` was given, in that order, where it was
+	 * reached from x = 0 without a restart; else null. It spares a caller who keeps more than the
+	 * products one last product with x.
+	 */
+	readonly weights: readonly number[] | null;
 }
 
 function dot(a: Float64Array, b: Float64Array): number {
@@ -43,16 +49,20 @@ export function solveGmres(
 	const normB = Math.sqrt(dot(b, b));
 	if (normB === 0) {
 		x.fill(0);
-		return { iterations: 0, residual: 0, converged: true };
+		return { iterations: 0, residual: 0, converged: true, weights: [] };
 	}
 	const work = new Float64Array(b.length);
 	let iterations = 0;
 	let residual = Infinity;
 	let broken = false;
+	let single: readonly number[] | null = null;
+	let cycles = 0;
 	while (iterations < maxIterations && !broken) {
 		// The usual start x = 0 needs no product.
-		if (x.some((value) => value !== 0)) multiply(x, work);
-		else work.fill(0);
+		const isFresh = cycles++ === 0 && x.every((value) => value === 0);
+		if (isFresh) work.fill(0);
+		else multiply(x, work);
+		single = null;
 		const first = b.map((value, i) => value - work[i]);
 		const beta = Math.sqrt(dot(first, first));
 		residual = beta / normB;
@@ -104,7 +114,8 @@ export function solveGmres(
 			weights[i] = value / triangle[i][i];
 			addScaled(x, weights[i], basis[i]);
 		}
+		if (isFresh) single = weights;
 		if (residual <= tolerance) break;
 	}
-	return { iterations, residual, converged: residual <= tolerance };
+	return { iterations, residual, converged: residual <= tolerance, weights: single };
 }

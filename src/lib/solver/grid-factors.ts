@@ -206,7 +206,12 @@ function gridOf(
 		if (factor === null) return;
 		const { node } = pattern.nets[net];
 		const local = work[net];
-		for (let i = 0; i < node.length; i++) local.right[i] = right[node[i]];
+		let isNeeded = false;
+		for (let i = 0; i < node.length; i++) {
+			local.right[i] = right[node[i]];
+			isNeeded ||= local.right[i] !== 0;
+		}
+		if (!isNeeded) return;
 		solveWith(factor, local.right, local.answer);
 		for (let i = 0; i < node.length; i++) answer[node[i]] = local.answer[i];
 	}

@@ -3,34 +3,45 @@ import type { Evaluation } from './evaluation.ts';
 import { solveGmres } from './gmres.ts';
 import type { PortSolver, Step } from './port-solver.ts';
 
-/** Where the inner iteration ends: the outer one gains this factor per step. */
-const INNER_TOLERANCE = 1e-5;
+/**
+ * Where the inner iteration ends, as a part of what the loads' slopes add: near the answer at the
+ * mismatch itself, which keeps the outer iteration superlinear (Dembo, Eisenstat and Steihaug 1982);
+ * far from it loosely, because the pieces still change.
+ */
+const LOOSEST_TOLERANCE = 1e-2;
+const TIGHTEST_TOLERANCE = 1e-6;
 const RESTART = 40;
 const MAX_INNER = 200;
 
 export interface LinearisedStep {
 	readonly step: Step;
 	readonly iterations: number;
-	/** Relative residual of the step's equations. */
-	readonly residual: number;
+}
+
+function addStep(target: Step, weight: number, { voltage, correction }: Step): void {
+	for (let i = 0; i < voltage.length; i++) target.voltage[i] += weight * voltage[i];
+	for (let s = 0; s < correction.length; s++) target.correction[s] += weight * correction[s];
 }
 
 /**
  * The Newton step with the loads' slopes. Without slopes it is the port solver's answer; with them
  * the port solver P is the right-hand preconditioner of GMRES: J = P + S with S the slopes of the
  * loads, so J P^-1 w = w + S P^-1 w, and the step is P^-1 w.
+ *
+ * @param relative mismatch as a fraction of the load: how near the answer is
  */
 export function solveLinearised(
 	circuit: Circuit,
 	solver: PortSolver,
 	evaluation: Evaluation,
 	loopTargets: Float64Array,
+	relative: number,
 	shouldStop?: () => boolean
 ): LinearisedStep {
 	const { loads, held } = circuit;
 	const { loadSlope, mismatchA } = evaluation;
 	const plain = solver.solve(mismatchA, loopTargets);
-	if (!loadSlope.some((slope) => slope !== 0)) return { step: plain, iterations: 0, residual: 0 };
+	if (!loadSlope.some((slope) => slope !== 0)) return { step: plain, iterations: 0 };
 
 	const count = mismatchA.length;
 	/** Adds S dv: what the loads take more at raised voltages. */
@@ -49,23 +60,25 @@ export function solveLinearised(
 	const right = new Float64Array(count);
 	addSlopes(plain.voltage, right);
 	for (let node = 0; node < count; node++) right[node] = -right[node];
-	const weights = new Float64Array(count);
-	const result = solveGmres(
+	const answer = new Float64Array(count);
+	const answered: Step[] = [];
+	const tolerance = Math.min(Math.max(relative, TIGHTEST_TOLERANCE), LOOSEST_TOLERANCE);
+	const { iterations, weights } = solveGmres(
 		(w, into) => {
+			const found = solver.solve(w, noTargets);
+			answered.push(found);
 			into.set(w);
-			addSlopes(solver.solve(w, noTargets).voltage, into);
+			addSlopes(found.voltage, into);
 		},
 		right,
-		weights,
-		{ tolerance: INNER_TOLERANCE, restart: RESTART, maxIterations: MAX_INNER, shouldStop }
+		answer,
+		{ tolerance, restart: RESTART, maxIterations: MAX_INNER, shouldStop }
 	);
-	const rest = solver.solve(weights, noTargets);
-	return {
-		step: {
-			voltage: plain.voltage.map((volts, node) => volts + rest.voltage[node]),
-			correction: plain.correction.map((volts, s) => volts + rest.correction[s])
-		},
-		iterations: result.iterations,
-		residual: result.residual
+	const step = {
+		voltage: Float64Array.from(plain.voltage),
+		correction: Float64Array.from(plain.correction)
 	};
+	if (weights === null) addStep(step, 1, solver.solve(answer, noTargets));
+	else weights.forEach((weight, i) => addStep(step, weight, answered[i]));
+	return { step, iterations };
 }

@@ -184,6 +184,7 @@ export function solveStage(
 			solver,
 			evaluation,
 			targets,
+			relative,
 			options.shouldStop
 		);
 		steps++;
