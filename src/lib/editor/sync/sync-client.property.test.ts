@@ -7,7 +7,6 @@ import {
 	addItems,
 	changeField,
 	duplicateItems,
-	moveItems,
 	removeItems,
 	setProperty,
 	type EditDraft,
@@ -45,16 +44,10 @@ function sharedDraft(document: Floorplan, pick: number, unique: number): EditDra
 	switch (Math.floor(pick * 6)) {
 		case 0:
 			return changeField(document, list, [id], 'offsetV', unique / 1000);
-		case 1:
-			return moveItems(
-				document,
-				[
-					{ list, id: 'S1' },
-					{ list, id: 'S2' }
-				],
-				unique / 1000,
-				0
-			);
+		case 1: {
+			const { label, operations } = changeField(document, list, ['S1', 'S2'], 'xUm', unique);
+			return { label, operations };
+		}
 		case 2:
 			return setProperty(document, 'limits', { dropV: unique });
 		case 3:
@@ -114,7 +107,12 @@ async function act(world: SyncWorld, people: Person[], random: () => number, ste
 	} else if (choice < 0.47) {
 		look(person);
 		const [conflict] = client.state.conflicts;
-		if (conflict) client.resolve(conflict.id, random() < 0.5 ? 'mine' : 'theirs');
+		if (conflict) {
+			client.resolve(conflict.id, random() < 0.5 ? 'mine' : 'theirs');
+			// A decision may put back an old value over later edits: together they may then want what
+			// is there already, and need not be sent.
+			person.shared.clear();
+		}
 	} else {
 		await world.deliver(Math.floor(random() * world.messages.length));
 	}
