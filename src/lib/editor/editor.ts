@@ -1,7 +1,9 @@
 import { boundsOf, type Bounds } from '#lib/geometry/index.ts';
 import type { Floorplan, Regulator } from '#lib/floorplan/index.ts';
 import {
+	findItem,
 	isPlaced,
+	moveItems,
 	type ApplyResult,
 	type EditDraft,
 	type ItemReference,
@@ -14,15 +16,19 @@ import {
 	type PlacementIndex,
 	type PlacementReason
 } from '#lib/floorplan/legality/index.ts';
-import { fit, panBy, zoomAt, type Camera } from './camera.ts';
-import { History } from './history.ts';
-import type { PointerInput, ToolState } from './input.ts';
+import { fit, panBy, viewOf, zoomAt, type Camera } from './camera.ts';
+import { explainFailure } from './explain.ts';
+import { History, type StepOffer } from './history.ts';
+import type { PointerInput } from './input.ts';
+import { NudgeBurst, type Schedule } from './nudge-burst.ts';
+import type { Overlay } from './overlay.ts';
 import type { ScreenPoint } from './points.ts';
 import { SceneIndex } from './scene-index.ts';
 import { keyOf, referenceOf, type ItemKey } from './selection.ts';
-import { idle } from './tools/select/idle.ts';
-import type { Visibility } from './visibility.ts';
-import { everythingVisible } from './visibility.ts';
+import { nudgeStepUm } from './snapping.ts';
+import { selecting } from './tools/select/index.ts';
+import type { Direction, ToolHost, ToolState } from './tools/tool.ts';
+import { everythingVisible, type Visibility } from './visibility.ts';
 
 /** What the editor needs from whoever keeps the document. */
 export interface DocumentKeeper {
@@ -30,27 +36,19 @@ export interface DocumentKeeper {
 	submit(draft: EditDraft): ApplyResult;
 }
 
-/** Things that are being dragged, before they are let go. */
-export interface DragPreview {
-	readonly keys: ReadonlySet<ItemKey>;
-	readonly dxUm: number;
-	readonly dyUm: number;
-	/** Reasons against the new places, by regulator id. */
-	readonly reasons: ReadonlyMap<string, readonly PlacementReason[]>;
+export interface EditorOptions {
+	/** Whether the person may change blocks, modes, corners and limits; default: who may draw may. */
+	readonly canEditLoads?: boolean;
+	/** For the pause that ends a run of nudges; without it the next other action ends the run. */
+	readonly schedule?: Schedule;
 }
 
-/** A regulator that follows the pointer until it is placed. */
-export interface Ghost {
-	readonly regulator: Regulator;
-	readonly reasons: readonly PlacementReason[];
-}
-
-/** What is drawn over the document while a tool works. */
-export interface Overlay {
-	readonly drag?: DragPreview;
-	readonly marquee?: Bounds;
-	readonly ghost?: Ghost;
-}
+/** Steps of a nudge with Shift. */
+export const LARGE_NUDGE = 10;
+/** An arrow key moves the view this far where there is nothing to nudge, px. */
+const PAN_STEP_PX = 60;
+/** Most neighbours that snapping looks at. */
+const MOST_NEIGHBOURS = 300;
 
 type Listener = () => void;
 
@@ -58,7 +56,7 @@ type Listener = () => void;
  * The editor without a screen: document, selection, camera, tools and history. Everything that can
  * be seen is in its fields; listeners hear that something changed and read what they need.
  */
-export class Editor {
+export class Editor implements ToolHost {
 	#floorplan: Floorplan;
 	#keeper: DocumentKeeper;
 	#scene: SceneIndex;
@@ -66,7 +64,8 @@ export class Editor {
 	#listeners = new Set<Listener>();
 	#state: ToolState;
 	#history = new History();
-	#burst = 0;
+	#burst: NudgeBurst | null = null;
+	readonly #schedule: Schedule;
 
 	selection: ReadonlySet<ItemKey> = new Set();
 	hovered: ItemKey | null = null;
@@ -74,19 +73,28 @@ export class Editor {
 	visibility: Visibility;
 	/** Whether the person may change the drawing. */
 	canDraw: boolean;
+	/** Whether the person may change blocks, modes, corners and limits. */
+	canEditLoads: boolean;
 	/** Why the last edit did not take effect; cleared by the next one that does. */
 	refusal: string | null = null;
 	camera: Camera = { centreXUm: 0, centreYUm: 0, pxPerUm: 0.1, widthPx: 1, heightPx: 1 };
 	/** The camera still follows the canvas's size: nobody has moved it yet. */
 	#isFitted = true;
 
-	constructor(floorplan: Floorplan, keeper: DocumentKeeper, canDraw: boolean) {
+	constructor(
+		floorplan: Floorplan,
+		keeper: DocumentKeeper,
+		canDraw: boolean,
+		options: EditorOptions = {}
+	) {
 		this.#floorplan = floorplan;
 		this.#keeper = keeper;
 		this.#scene = new SceneIndex(floorplan);
 		this.canDraw = canDraw;
+		this.canEditLoads = options.canEditLoads ?? canDraw;
+		this.#schedule = options.schedule ?? (() => () => {});
 		this.visibility = everythingVisible(floorplan);
-		this.#state = idle(this);
+		this.#state = selecting(this);
 	}
 
 	get floorplan(): Floorplan {
@@ -102,7 +110,7 @@ export class Editor {
 	}
 
 	get undoLabel(): string | null {
-		return this.#history.undoLabel;
+		return this.#burst ? 'Nudge' : this.#history.undoLabel;
 	}
 
 	get redoLabel(): string | null {
@@ -145,15 +153,12 @@ export class Editor {
 		return this.#floorplan[list].some((item) => item.id === id);
 	}
 
-	/**
-	 * Makes an edit. Returns whether it took effect; why not stands in `refusal`.
-	 *
-	 * @param burst edits with the same name in a row are one step of undo
-	 */
-	execute(draft: EditDraft, burst: string | null = null): boolean {
+	/** Makes an edit: one step of undo. Returns whether it took effect; why not stands in `refusal`. */
+	execute(draft: EditDraft): boolean {
+		this.endBurst();
 		if (draft.operations.length === 0) return false;
 		const inverse = this.#submit(draft);
-		if (inverse) this.#history.record(draft, inverse, burst && `${burst}:${this.#burst}`);
+		if (inverse) this.#history.record(draft.label, inverse);
 		this.changed();
 		return inverse !== null;
 	}
@@ -161,38 +166,69 @@ export class Editor {
 	/** The operations that lead back, or null where the edit did not take effect. */
 	#submit(draft: EditDraft): readonly Operation[] | null {
 		const result = this.#keeper.submit(draft);
-		switch (result.status) {
-			case 'applied':
-				this.refusal = null;
-				return result.inverse;
-			case 'refused':
-				this.refusal = `${result.problems[0].path}: ${result.problems[0].message}`;
-				return null;
-			case 'conflict':
-				this.refusal =
-					'Somebody else has changed the same thing meanwhile; it stays as they left it.';
-				return null;
-		}
+		this.refusal =
+			result.status === 'applied' ? null : `${draft.label}: not done. ${explainFailure(result)}`;
+		return result.status === 'applied' ? result.inverse : null;
 	}
 
-	/** The next edit of a burst begins a new step of undo. */
-	endBurst(): void {
-		this.#burst++;
-	}
-
-	undo(): void {
-		const step = this.#history.undo();
-		if (step && this.#submit(step.draft)) step.undone();
+	/** Tells the person why something was not done. */
+	refuse(reason: string): void {
+		this.refusal = reason;
 		this.changed();
 	}
 
+	undo(): void {
+		this.#take(() => this.#history.undo());
+	}
+
 	redo(): void {
-		const step = this.#history.redo();
-		if (step && this.#submit(step.draft)) step.redone();
+		this.#take(() => this.#history.redo());
+	}
+
+	/** Takes a step of the history. One that no longer fits is given up, and the person is told. */
+	#take(offer: () => StepOffer | null): void {
+		if (this.#state.name.startsWith('select.')) this.#giveUp();
+		this.endBurst();
+		const step = offer();
+		if (!step) return;
+		const inverse = this.#submit(step.draft);
+		if (inverse) step.taken(inverse);
+		else step.dropped();
+		this.changed();
+	}
+
+	/**
+	 * Moves the selection by steps of the grid. A run of nudges is shown as it goes and becomes one
+	 * edit when it ends: after a pause, or before anything else is done. False where nothing moves.
+	 */
+	nudge([x, y]: Direction, isLarge: boolean): boolean {
+		const items = this.#burst?.items ?? this.selected.filter((item) => this.canMove(item));
+		if (items.length === 0) return false;
+		this.#burst ??= new NudgeBurst(items, this.#schedule, () => this.endBurst());
+		const steps = isLarge ? LARGE_NUDGE : 1;
+		const [stepX, stepY] = nudgeStepUm(this.#floorplan, items);
+		this.#burst.add(x * steps * stepX, y * steps * stepY);
+		const { dxUm, dyUm } = this.#burst;
+		const reasons = this.reasonsAfterMove(items, dxUm, dyUm);
+		this.showOverlay({
+			drag: { keys: new Set(items.map(keyOf)), dxUm, dyUm, reasons, guides: [] }
+		});
+		return true;
+	}
+
+	/** Finishes a run of nudges, if there is one. */
+	endBurst(): void {
+		const burst = this.#burst;
+		if (!burst) return;
+		this.#burst = null;
+		burst.end();
+		this.overlay = {};
+		this.execute(moveItems(this.#floorplan, burst.items, burst.dxUm, burst.dyUm));
 		this.changed();
 	}
 
 	select(references: readonly ItemReference[], isAdding = false): void {
+		this.endBurst();
 		const keys = references.map(keyOf);
 		const next = new Set(isAdding ? this.selection : []);
 		for (const key of keys) {
@@ -200,11 +236,35 @@ export class Editor {
 			else next.add(key);
 		}
 		this.selection = next;
-		this.endBurst();
 		this.changed();
 	}
 
 	isShown = (list: PlacedList): boolean => this.visibility.lists[list];
+
+	/** Whether the person may change an item. */
+	canEdit({ list }: ItemReference): boolean {
+		const isLoad = list === 'blocks' || list === 'modes' || list === 'corners';
+		return isLoad ? this.canEditLoads : this.canDraw;
+	}
+
+	/** Whether the person may move an item, and it is not fixed. */
+	canMove(reference: ItemReference): boolean {
+		if (!this.canEdit(reference) || !isPlaced(reference.list)) return false;
+		if (reference.list !== 'regulators') return true;
+		return !findItem(this.#floorplan, reference.list, reference.id)?.fixed;
+	}
+
+	reasonsAgainst(regulator: Regulator): PlacementReason[] {
+		return checkPlacement(this.placements, regulator);
+	}
+
+	neighbours(except: readonly ItemReference[]): Bounds[] {
+		const left = new Set(except.map(keyOf));
+		return this.#scene
+			.boundsInView(viewOf(this.camera), this.isShown)
+			.filter(({ key }) => !left.has(key))
+			.slice(0, MOST_NEIGHBOURS);
+	}
 
 	/** Reasons against moving regulators by a distance, by id. */
 	reasonsAfterMove(
@@ -232,21 +292,56 @@ export class Editor {
 		this.changed();
 	}
 
+	/** The tool in use starts anew, whatever it was in the middle of; another takes its place. */
+	startTool(make: (host: ToolHost) => ToolState): void {
+		this.endBurst();
+		this.#giveUp();
+		this.hovered = null;
+		this.enter(make(this));
+	}
+
+	leaveTool(): void {
+		this.enter(selecting(this));
+	}
+
+	/** Ends a running gesture and tool without a trace. */
+	#giveUp(): void {
+		for (let most = 3; most > 0 && this.#state.cancel; most--) this.#state.cancel();
+	}
+
 	pointerDown(input: PointerInput): void {
 		this.endBurst();
 		this.#state.pointerDown?.(input);
 	}
 
 	pointerMove(input: PointerInput): void {
-		this.#state.pointerMove?.(input);
+		const before = this.#state;
+		before.pointerMove?.(input);
+		// A move that turns a press into a drag is the first move of the drag, too.
+		if (this.#state !== before) this.#state.pointerMove?.(input);
 	}
 
 	pointerUp(input: PointerInput): void {
 		this.#state.pointerUp?.(input);
 	}
 
+	/** An arrow key: for the tool, else a nudge of the selection, else the view moves. */
+	arrow(direction: Direction, isLarge: boolean): void {
+		if (this.#state.arrow) this.#state.arrow(direction, isLarge);
+		else if (!this.nudge(direction, isLarge)) {
+			this.pan(-direction[0] * PAN_STEP_PX, direction[1] * PAN_STEP_PX);
+		}
+	}
+
+	/** Enter: for the tool, else it selects what the pointer is over. */
+	confirm(): void {
+		if (this.#state.confirm) this.#state.confirm();
+		else if (this.hovered) this.select([referenceOf(this.hovered)]);
+	}
+
 	/** Gives up what the tool is doing; where it does nothing, the selection is cleared. */
 	cancel(): void {
+		this.endBurst();
 		if (this.#state.cancel) this.#state.cancel();
 		else if (this.selection.size > 0) this.select([]);
 	}
@@ -302,6 +397,20 @@ export class Editor {
 		this.changed();
 	}
 
+	/** Brings an item into view where it is not wholly there already, without another scale. */
+	reveal(key: ItemKey): void {
+		const bounds = this.#scene.boundsOf(key);
+		if (!bounds) return;
+		const view = viewOf(this.camera);
+		const isSeen =
+			bounds.minX >= view.minX &&
+			bounds.maxX <= view.maxX &&
+			bounds.minY >= view.minY &&
+			bounds.maxY <= view.maxY;
+		if (isSeen) return;
+		this.flyTo((bounds.minX + bounds.maxX) / 2, (bounds.minY + bounds.maxY) / 2, 0);
+	}
+
 	/** Brings a place on the die to the canvas's centre, near enough to see things there. */
 	flyTo(xUm: number, yUm: number, leastPxPerUm = 0.4): void {
 		this.#isFitted = false;
@@ -310,6 +419,7 @@ export class Editor {
 		this.changed();
 	}
 
+	/** Another scale about the middle of the view. */
 	setScale(pxPerUm: number): void {
 		this.#isFitted = false;
 		this.camera = { ...this.camera, pxPerUm };

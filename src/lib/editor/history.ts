@@ -1,17 +1,27 @@
 import type { EditDraft, Operation } from '#lib/floorplan/edits/index.ts';
 
-/** Edits within one burst, such as nudges by a held key, are one step of undo. */
+/** One action of a person: the operations that take it back, or, once undone, do it again. */
 interface Step {
 	readonly label: string;
 	readonly operations: readonly Operation[];
-	/** Operations that lead back. */
-	readonly inverse: readonly Operation[];
-	readonly burst: string | null;
+}
+
+/** Steps kept; older ones are forgotten. */
+const MOST_STEPS = 500;
+
+/** A step on offer: the edit that takes it, and what to call when that worked or never will. */
+export interface StepOffer {
+	readonly draft: EditDraft;
+	/** It took effect; `inverse` leads back. */
+	taken(inverse: readonly Operation[]): void;
+	/** It no longer fits the document. */
+	dropped(): void;
 }
 
 /**
  * What can be undone and done again. Only a person's own edits are here: undo sends the inverse as
- * an ordinary edit, so it never takes back what somebody else has done.
+ * an ordinary edit, so it never takes back what somebody else has done. Selection and camera are no
+ * part of it.
  */
 export class History {
 	#done: Step[] = [];
@@ -25,48 +35,37 @@ export class History {
 		return this.#undone.at(-1)?.label ?? null;
 	}
 
-	/** Records an edit that took effect; one of the same burst joins the last step. */
-	record(
-		{ label, operations }: EditDraft,
-		inverse: readonly Operation[],
-		burst: string | null = null
-	): void {
-		const last = this.#done.at(-1);
-		if (burst !== null && last?.burst === burst) {
-			this.#done[this.#done.length - 1] = {
-				...last,
-				operations: [...last.operations, ...operations],
-				inverse: [...inverse, ...last.inverse]
-			};
-		} else {
-			this.#done.push({ label, operations, inverse, burst });
-		}
+	/** Records an edit that took effect; what was undone before can no longer be done again. */
+	record(label: string, inverse: readonly Operation[]): void {
+		this.#done.push({ label, operations: inverse });
+		if (this.#done.length > MOST_STEPS) this.#done.shift();
 		this.#undone = [];
 	}
 
-	/** The edit that undoes the last step, or null; `undone` tells that it took effect. */
-	undo(): { readonly draft: EditDraft; undone(): void } | null {
-		const step = this.#done.at(-1);
+	undo(): StepOffer | null {
+		return this.#offer('Undo', this.#done, this.#undone);
+	}
+
+	redo(): StepOffer | null {
+		return this.#offer('Redo', this.#undone, this.#done);
+	}
+
+	#offer(word: string, from: Step[], to: Step[]): StepOffer | null {
+		const step = from.at(-1);
 		if (!step) return null;
+		const label = `${word}: ${step.label}`.slice(0, 200);
 		return {
-			draft: { label: `Undo: ${step.label}`.slice(0, 200), operations: [...step.inverse] },
-			undone: () => {
-				this.#done.pop();
-				this.#undone.push(step);
-			}
+			draft: { label, operations: [...step.operations] },
+			taken(inverse) {
+				from.pop();
+				to.push({ label: step.label, operations: inverse });
+			},
+			dropped: () => void from.pop()
 		};
 	}
 
-	/** The edit that does the last undone step again, or null; `redone` tells that it took effect. */
-	redo(): { readonly draft: EditDraft; redone(): void } | null {
-		const step = this.#undone.at(-1);
-		if (!step) return null;
-		return {
-			draft: { label: `Redo: ${step.label}`.slice(0, 200), operations: [...step.operations] },
-			redone: () => {
-				this.#undone.pop();
-				this.#done.push({ ...step, burst: null });
-			}
-		};
+	clear(): void {
+		this.#done = [];
+		this.#undone = [];
 	}
 }

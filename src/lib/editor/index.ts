@@ -1,7 +1,10 @@
 export type { Camera } from './camera.ts';
 export { toDie, toScreen, viewOf } from './camera.ts';
-export type { DocumentKeeper, DragPreview, Ghost, Overlay } from './editor.ts';
+export type { DocumentKeeper, EditorOptions } from './editor.ts';
 export { Editor } from './editor.ts';
+export type { DragPreview, Ghost, Overlay } from './overlay.ts';
+export type { Guide } from './snapping.ts';
+export type { Schedule } from './nudge-burst.ts';
 export type { PointerInput } from './input.ts';
 export type { DiePoint, ScreenPoint } from './points.ts';
 export { diePoint, screenPoint } from './points.ts';
@@ -11,3 +14,4 @@ export type { Visibility } from './visibility.ts';
 export { hiddenCount } from './visibility.ts';
 export type { RegulatorTemplate } from './tools/place/placing.ts';
 export { placing } from './tools/place/placing.ts';
+export { probing } from './tools/probe/probing.ts';

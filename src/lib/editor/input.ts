@@ -8,14 +8,3 @@ export interface PointerInput {
 	/** Suspends snapping. */
 	readonly isFree: boolean;
 }
-
-/** One state of a tool: a small machine moves from state to state as the pointer does. */
-export interface ToolState {
-	/** `tool.state`, for tests and for the pointer's shape. */
-	readonly name: string;
-	pointerDown?(input: PointerInput): void;
-	pointerMove?(input: PointerInput): void;
-	pointerUp?(input: PointerInput): void;
-	/** Escape, a right click, or the system took the pointer away: everything as before. */
-	cancel?(): void;
-}

@@ -1,4 +1,5 @@
-export type { Command } from './commands.ts';
-export { commands, isAvailable } from './commands.ts';
+export type { Command, CommandPermission, PageActions } from './command.ts';
+export { isAvailable } from './command.ts';
+export { commandById, commands } from './commands.ts';
 export type { KeyPress } from './keys.ts';
-export { commandOf, describeKeys } from './keys.ts';
+export { commandOf, describeKeys, isTyping } from './keys.ts';

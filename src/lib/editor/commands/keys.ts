@@ -1,4 +1,5 @@
-import { commands, type Command } from './commands.ts';
+import type { Command } from './command.ts';
+import { commands } from './commands.ts';
 
 /** What of a keyboard event decides which command it is. */
 export interface KeyPress {
@@ -28,6 +29,20 @@ const byKey = new Map<string, Command>(
 /** The command of a key press, or undefined. */
 export function commandOf(press: KeyPress): Command | undefined {
 	return press.altKey ? undefined : byKey.get(nameOf(press));
+}
+
+/** Elements in which keys write text. */
+const TEXT_ELEMENTS = new Set(['INPUT', 'TEXTAREA', 'SELECT']);
+
+/** Whether a key press belongs to somebody who is typing: no command may take it. */
+export function isTyping(
+	target: { readonly tagName: string; readonly isContentEditable: boolean } | null,
+	isComposing: boolean
+): boolean {
+	return (
+		isComposing ||
+		(target !== null && (TEXT_ELEMENTS.has(target.tagName) || target.isContentEditable))
+	);
 }
 
 /** A command's keys for people: "Ctrl+Shift+Z". */

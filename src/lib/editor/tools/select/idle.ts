@@ -1,29 +1,29 @@
 import { toDie } from '../../camera.ts';
-import type { Editor } from '../../editor.ts';
-import type { PointerInput, ToolState } from '../../input.ts';
-import { pressing } from './pressing.ts';
+import type { PointerInput } from '../../input.ts';
+import type { ItemKey } from '../../selection.ts';
+import type { ToolHost, ToolState } from '../tool.ts';
+import type { SelectTransitions } from './transitions.ts';
 
-/** How near to a bump the pointer must be, px. */
+/** How near to a bump or a small regulator the pointer must be, px. */
 const REACH_PX = 7;
 
 /** The topmost visible item under the pointer. */
-export function itemUnder(editor: Editor, { point }: PointerInput) {
-	const reachUm = REACH_PX / editor.camera.pxPerUm;
-	return editor.scene.hit(toDie(editor.camera, point), reachUm, editor.isShown);
+function itemUnder({ camera, scene, isShown }: ToolHost, { point }: PointerInput): ItemKey | null {
+	return scene.hit(toDie(camera, point), REACH_PX / camera.pxPerUm, isShown);
 }
 
 /** Waiting: the pointer shows what it is over. */
-export function idle(editor: Editor): ToolState {
+export function idle(host: ToolHost, go: SelectTransitions): ToolState {
 	return {
 		name: 'select.idle',
 		pointerMove(input) {
-			const hovered = itemUnder(editor, input);
-			if (hovered === editor.hovered) return;
-			editor.hovered = hovered;
-			editor.changed();
+			const hovered = itemUnder(host, input);
+			if (hovered === host.hovered) return;
+			host.hovered = hovered;
+			host.changed();
 		},
 		pointerDown(input) {
-			editor.enter(pressing(editor, input, itemUnder(editor, input)));
+			go.pressing(input, itemUnder(host, input));
 		}
 	};
 }

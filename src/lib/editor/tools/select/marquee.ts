@@ -1,34 +1,35 @@
 import { toDie } from '../../camera.ts';
-import type { Editor } from '../../editor.ts';
-import type { PointerInput, ToolState } from '../../input.ts';
-import { referenceOf } from '../../selection.ts';
-import { idle } from './idle.ts';
+import type { PointerInput } from '../../input.ts';
+import { keyOf, referenceOf } from '../../selection.ts';
+import type { ToolHost, ToolState } from '../tool.ts';
+import type { SelectTransitions } from './transitions.ts';
 
 /** A rectangle is drawn: what it encloses wholly is selected, with the modifier in addition. */
-export function marquee(editor: Editor, start: PointerInput): ToolState {
-	const from = toDie(editor.camera, start.point);
-	const before = editor.selected;
+export function marquee(host: ToolHost, go: SelectTransitions, start: PointerInput): ToolState {
+	const from = toDie(host.camera, start.point);
+	const before = host.selected.map(keyOf);
 	const end = () => {
-		editor.overlay = {};
-		editor.enter(idle(editor));
+		host.showOverlay({});
+		go.idle();
 	};
 	return {
 		name: 'select.marquee',
 		pointerMove({ point }) {
-			const to = toDie(editor.camera, point);
+			const to = toDie(host.camera, point);
 			const bounds = {
 				minX: Math.min(from[0], to[0]),
 				minY: Math.min(from[1], to[1]),
 				maxX: Math.max(from[0], to[0]),
 				maxY: Math.max(from[1], to[1])
 			};
-			const enclosed = editor.scene.enclosed(bounds, editor.isShown).map(referenceOf);
-			editor.select(start.isAdding ? [...before, ...enclosed] : enclosed);
-			editor.showOverlay({ marquee: bounds });
+			const enclosed = host.scene.enclosed(bounds, host.isShown);
+			const keys = new Set(start.isAdding ? [...before, ...enclosed] : enclosed);
+			host.select([...keys].map(referenceOf));
+			host.showOverlay({ marquee: bounds });
 		},
 		pointerUp: end,
 		cancel() {
-			editor.select(before);
+			host.select(before.map(referenceOf));
 			end();
 		}
 	};
