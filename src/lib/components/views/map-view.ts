@@ -1,0 +1,72 @@
+import type { Floorplan } from '#lib/floorplan/index.ts';
+import {
+	limitContour,
+	mapPixels,
+	mapRange,
+	type MapPlane,
+	type PreparedMap
+} from '#lib/editor/paint/index.ts';
+import type { DropMap } from '#lib/results/index.ts';
+
+/** What the map shows: which rails, and which part of the drop. */
+export const MAP_QUANTITIES = [
+	{ value: 'dropV', label: 'Drop seen by loads' },
+	{ value: 'netDropV', label: 'Drop, net side' },
+	{ value: 'groundRiseV', label: 'Rise, ground side' }
+] as const satisfies readonly { value: MapPlane; label: string }[];
+
+/** Choice that shows the maps of all regulated nets at once, on one scale. */
+export const ALL_RAILS = '*';
+
+/** Nets whose maps a choice shows. */
+export function netsOf(floorplan: Floorplan, choice: string): string[] {
+	if (choice !== ALL_RAILS) return [choice];
+	return floorplan.nets.filter(({ kind }) => kind === 'regulated').map(({ id }) => id);
+}
+
+/** Limit of drop that holds on a net, V; null where nothing is limited. */
+export function dropLimitOf({ limits }: Floorplan, net: string): number | null {
+	return limits.overrides?.nets?.[net]?.dropV ?? limits.dropV ?? null;
+}
+
+export interface MapPicture {
+	readonly maps: readonly PreparedMap[];
+	readonly range: { readonly min: number; readonly max: number };
+	readonly limitsV: readonly number[];
+}
+
+/** An image of RGBA bytes. */
+export type MakeImage = (
+	pixels: Uint8ClampedArray<ArrayBuffer>,
+	columns: number,
+	rows: number
+) => CanvasImageSource;
+
+/** Maps of several nets on one scale from 0, made ready to be painted. */
+export function preparePicture(
+	floorplan: Floorplan,
+	maps: readonly { readonly net: string; readonly map: DropMap }[],
+	plane: MapPlane,
+	wash: Uint8ClampedArray,
+	makeImage: MakeImage
+): MapPicture {
+	const { min, max } = mapRange(
+		maps.map(({ map }) => map),
+		plane
+	);
+	// From 0 up, so that the same colour is the same drop in every mode; below only where there is a rise.
+	const range = { min: Math.min(0, min), max: Math.max(max, 1e-9) };
+	const limits = maps.map(({ net }) => (plane === 'dropV' ? dropLimitOf(floorplan, net) : null));
+	return {
+		range,
+		limitsV: [...new Set(limits.filter((limit) => limit !== null))].sort((a, b) => a - b),
+		maps: maps.map(({ map }, i) => {
+			const limit = limits[i];
+			return {
+				map,
+				image: makeImage(mapPixels(map, plane, wash, range), map.columns, map.rows),
+				contour: limit === null ? null : limitContour(map, plane, limit)
+			};
+		})
+	};
+}
