@@ -4,6 +4,7 @@ import {
 	integer,
 	jsonb,
 	pgTable,
+	primaryKey,
 	text,
 	timestamp,
 	unique,
@@ -55,6 +56,8 @@ export const floorplanEdits = pgTable(
 		baseVersion: integer().notNull(),
 		/** Version that it made; it followed the one before. */
 		toVersion: integer().notNull(),
+		/** Hash of the document after it. */
+		toHash: text().notNull(),
 		userId: uuid()
 			.notNull()
 			.references(() => users.id),
@@ -64,4 +67,21 @@ export const floorplanEdits = pgTable(
 		unique('floorplan_edits_edit').on(table.floorplanId, table.editId),
 		unique('floorplan_edits_version').on(table.floorplanId, table.toVersion)
 	]
+);
+
+/**
+ * Documents that work was asked for, each content once in a project: a job and a result name theirs
+ * by its hash, and stay true to it while the draft goes on.
+ */
+export const documents = pgTable(
+	'documents',
+	{
+		projectId: uuid()
+			.notNull()
+			.references(() => projects.id, { onDelete: 'cascade' }),
+		hash: text().notNull(),
+		document: jsonb().$type<Floorplan>().notNull(),
+		createdAt: timestamp({ withTimezone: true }).notNull().defaultNow()
+	},
+	(table) => [primaryKey({ columns: [table.projectId, table.hash] })]
 );

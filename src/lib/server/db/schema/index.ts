@@ -1,6 +1,6 @@
 export { rateLimits, sessions, teams, users } from './teams.ts';
 export { projectMembers, projects } from './projects.ts';
-export { floorplanEdits, floorplans } from './floorplans.ts';
+export { documents, floorplanEdits, floorplans } from './floorplans.ts';
 export type { ResultFigures } from './jobs.ts';
 export { jobs, resultMaps, results, workers } from './jobs.ts';
 export { libraryItems } from './library.ts';

@@ -1,5 +1,14 @@
 import { sql } from 'drizzle-orm';
-import { boolean, integer, pgTable, text, timestamp, uniqueIndex, uuid } from 'drizzle-orm/pg-core';
+import {
+	boolean,
+	index,
+	integer,
+	pgTable,
+	text,
+	timestamp,
+	uniqueIndex,
+	uuid
+} from 'drizzle-orm/pg-core';
 
 export const teams = pgTable('teams', {
 	id: uuid().primaryKey().defaultRandom(),
@@ -26,15 +35,19 @@ export const users = pgTable(
 );
 
 /** Signed-in browsers. The id is the SHA-256 of the token in the cookie: the table opens no door. */
-export const sessions = pgTable('sessions', {
-	id: text().primaryKey(),
-	userId: uuid()
-		.notNull()
-		.references(() => users.id, { onDelete: 'cascade' }),
-	expiresAt: timestamp({ withTimezone: true }).notNull(),
-	createdAt: timestamp({ withTimezone: true }).notNull().defaultNow(),
-	userAgent: text().notNull().default('')
-});
+export const sessions = pgTable(
+	'sessions',
+	{
+		id: text().primaryKey(),
+		userId: uuid()
+			.notNull()
+			.references(() => users.id, { onDelete: 'cascade' }),
+		expiresAt: timestamp({ withTimezone: true }).notNull(),
+		createdAt: timestamp({ withTimezone: true }).notNull().defaultNow(),
+		userAgent: text().notNull().default('')
+	},
+	(table) => [index('sessions_user').on(table.userId)]
+);
 
 /** Counters of the rate limiter, shared by all processes. */
 export const rateLimits = pgTable('rate_limits', {
