@@ -1,11 +1,18 @@
 /** Characters that make a spreadsheet take a cell for a formula. */
 const FORMULA_START = /^[=+\-@\t\r]/;
 
-function csvCell(value: string | number | null): string {
+export type TableValue = string | number | null;
+
+/** A value as plain text: texts that a spreadsheet would take for a formula get a leading quote. */
+function plain(value: TableValue): string {
 	if (value === null) return '';
 	if (typeof value === 'number') return Number.isFinite(value) ? String(value) : '';
-	const neutral = FORMULA_START.test(value) ? `'${value}` : value;
-	return /[",\r\n]/.test(neutral) ? `"${neutral.replaceAll('"', '""')}"` : neutral;
+	return FORMULA_START.test(value) ? `'${value}` : value;
+}
+
+function csvCell(value: TableValue): string {
+	const text = plain(value);
+	return /[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text;
 }
 
 /**
@@ -14,7 +21,17 @@ function csvCell(value: string | number | null): string {
  */
 export function tableCsv(
 	headers: readonly string[],
-	rows: readonly (readonly (string | number | null)[])[]
+	rows: readonly (readonly TableValue[])[]
 ): string {
 	return [headers, ...rows].map((row) => `${row.map(csvCell).join(',')}\r\n`).join('');
+}
+
+/** A table for the clipboard: cells parted by tabs, as spreadsheets paste them. */
+export function tableTsv(
+	headers: readonly string[],
+	rows: readonly (readonly TableValue[])[]
+): string {
+	return [headers, ...rows]
+		.map((row) => `${row.map((value) => plain(value).replace(/[\t\r\n]+/g, ' ')).join('\t')}\n`)
+		.join('');
 }
