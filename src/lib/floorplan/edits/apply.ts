@@ -4,8 +4,10 @@ import { floorplanSchema, itemSchemaOf, type Floorplan, type ItemList } from '..
 import { itemPath, type Problem } from '../problems.ts';
 import { checkListLengths, checkRules } from '../rules.ts';
 import { shapeProblems } from '../shape-problems.ts';
+import { findItem, type ItemReference } from './actions.ts';
 import { ItemTable } from './item-table.ts';
 import type { Item, Operation, Property } from './operation.ts';
+import { referenceProblems } from './references.ts';
 
 /** Somebody has changed meanwhile what an operation expected to find. */
 export interface Conflict {
@@ -68,10 +70,21 @@ export function applyOperations(
 		}
 	});
 	if (conflicts.length > 0) return { status: 'conflict', conflicts };
+	if (problems.length === 0)
+		problems.push(...referenceProblems(draft, removedItems(draft, operations)));
 	if (problems.length === 0) problems.push(...checkListLengths(draft), ...checkRules(draft));
 	return problems.length > 0
 		? { status: 'refused', problems }
 		: { status: 'applied', floorplan: draft, inverse: inverse.reverse() };
+}
+
+/** Items that operations removed and did not put back. */
+function removedItems(draft: Draft, operations: readonly Operation[]): ItemReference[] {
+	return operations.flatMap((operation): ItemReference[] => {
+		if (operation.op !== 'remove') return [];
+		const { list, item } = operation;
+		return findItem(draft, list, item.id) ? [] : [{ list, id: item.id }];
+	});
 }
 
 function tableOf(draft: Draft, tables: Map<ItemList, ItemTable>, list: ItemList): ItemTable {

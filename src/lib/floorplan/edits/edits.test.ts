@@ -1,7 +1,13 @@
 import { readFileSync } from 'node:fs';
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { formatProblems, hashFloorplan, parseFloorplanText, type Floorplan } from '../index.ts';
+import {
+	formatProblems,
+	hashFloorplan,
+	parseFloorplanText,
+	writeFloorplan,
+	type Floorplan
+} from '../index.ts';
 import {
 	addItems,
 	applyOperations,
@@ -12,6 +18,7 @@ import {
 	moveItems,
 	operationSchema,
 	partsTouched,
+	referrersOf,
 	removeItems,
 	setProperty,
 	type EditDraft,
@@ -147,12 +154,72 @@ describe('applyOperations', () => {
 	});
 
 	it('edits of different objects commute', () => {
-		const start = example();
-		const move = moveItems(start, [everything[0]], 5, 0).operations;
-		const other = changeField(start, 'regulators', ['R2'], 'offsetV', 0.01).operations;
-		expect(hashFloorplan(applied(applied(start, move), other))).toBe(
-			hashFloorplan(applied(applied(start, other), move))
+		const one: fc.Arbitrary<(f: Floorplan, id: string) => EditDraft> = fc.oneof(
+			fc.tuple(fc.integer({ min: -9999, max: 9999 }), fc.integer({ min: -9999, max: 9999 })).map(
+				([dx, dy]) =>
+					(f: Floorplan, id: string) =>
+						moveItems(f, [{ list: 'regulators', id }], dx / 1000, dy / 1000)
+			),
+			fc
+				.nat(99)
+				.map(
+					(mv) => (f: Floorplan, id: string) =>
+						changeField(f, 'regulators', [id], 'offsetV', mv / 1000)
+				),
+			fc
+				.boolean()
+				.map(
+					(enabled) => (f: Floorplan, id: string) =>
+						changeField(f, 'regulators', [id], 'enabled', enabled)
+				),
+			fc.constant((f: Floorplan, id: string) => removeItems(f, [{ list: 'regulators', id }]))
 		);
+		fc.assert(
+			fc.property(one, one, (first, second) => {
+				const start = example();
+				const a = first(start, 'R1').operations;
+				const b = second(start, 'R2').operations;
+				expect(hashFloorplan(applied(applied(start, a), b))).toBe(
+					hashFloorplan(applied(applied(start, b), a))
+				);
+			})
+		);
+	});
+
+	it('50 times to a file and back leaves every value as it was (UX-21)', () => {
+		let floorplan = applied(example(), moveItems(example(), everything, 0.017, -0.003).operations);
+		const first = hashFloorplan(floorplan);
+		for (let k = 0; k < 50; k++) {
+			const result = parseFloorplanText(writeFloorplan(floorplan));
+			if (result.status !== 'parsed') throw new Error(JSON.stringify(result));
+			floorplan = result.floorplan;
+		}
+		expect(hashFloorplan(floorplan)).toBe(first);
+	});
+
+	it('what is removed together with all that uses it, or put back, is no problem', () => {
+		const start = example();
+		const both = removeItems(start, [...everything.slice(0, 2), { list: 'cells', id: 'weir' }]);
+		expect(applied(start, both.operations).cells).toEqual([]);
+		const [cell] = start.cells;
+		const replaced: Operation[] = [
+			{ op: 'remove', list: 'cells', index: 0, item: cell },
+			{ op: 'insert', list: 'cells', index: 0, item: { ...cell, maxA: 1 } }
+		];
+		expect(applied(start, replaced).cells[0].maxA).toBe(1);
+	});
+
+	it('names who uses an item: lists, records and limits', () => {
+		const start = applied(
+			example(),
+			setProperty(example(), 'limits', { overrides: { nets: { core: { dropV: 0.01 } } } })
+				.operations
+		);
+		const users = (list: 'nets' | 'layers' | 'modes', id: string) =>
+			referrersOf(start, [{ list, id }]).map(({ from }) => from?.id ?? 'limits');
+		expect(users('nets', 'core')).toEqual(['core.M1', 'core.M2', 'R1', 'R2', 'cpu', 'limits']);
+		expect(users('modes', 'run')).toEqual(['cpu']);
+		expect(users('layers', 'M1')).toEqual(['V1', 'core.M1', 'gnd.M1', 'vin.M1']);
 	});
 
 	it('10,000 nudges out and back leave no drift (UX-21)', () => {
@@ -227,7 +294,13 @@ describe('applyOperations', () => {
 			applyOperations(start, removeItems(start, [{ list: 'cells', id: 'weir' }]).operations)
 		).toMatchObject({
 			status: 'refused',
-			problems: [{ path: 'regulators[0] (R1).cell' }, { path: 'regulators[1] (R2).cell' }]
+			problems: [
+				{
+					path: 'cells (weir)',
+					message:
+						'is used by regulator R1, regulator R2 (expected to change or remove what uses it first)'
+				}
+			]
 		});
 		expect(
 			applyOperations(start, changeField(start, 'regulators', ['R1'], 'colour', 'red').operations)

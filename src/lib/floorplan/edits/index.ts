@@ -16,3 +16,5 @@ export {
 	removeItems,
 	setProperty
 } from './actions.ts';
+export type { Referrer } from './references.ts';
+export { referrersOf } from './references.ts';
