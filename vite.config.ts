@@ -10,6 +10,7 @@ export default defineConfig({
 	optimizeDeps: { include: ['konva', 'svelte-konva', 'ml-matrix', 'zod'] },
 	server: { watch: { ignored: ['**/.manyweir/**'] } },
 	test: {
+		reporters: ['default', './tests/support/count-reporter.ts'],
 		projects: [
 			{
 				// Pure code: no database, no browser.
@@ -23,7 +24,14 @@ export default defineConfig({
 				// The server's code on a real, throw-away database.
 				test: {
 					name: 'server',
-					include: ['src/lib/server/**/*.test.ts', 'tests/api/**/*.test.ts']
+					include: ['src/lib/server/**/*.test.ts', 'tests/api/**/*.test.ts'],
+					globalSetup: ['./tests/support/database-setup.ts'],
+					testTimeout: 60_000,
+					hookTimeout: 60_000,
+					env: {
+						LOG_LEVEL: 'silent',
+						MANYWEIR_SOLVE_THREAD: '.manyweir/test-worker/solve-thread.js'
+					}
 				}
 			},
 			{
