@@ -1,4 +1,5 @@
 import { readFileSync } from 'node:fs';
+import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { floorplanSchema, type Floorplan } from '../index.ts';
 import { buildPlacementIndex, checkAllPlacements, checkPlacement, snapToSite } from './index.ts';
@@ -78,6 +79,45 @@ describe('checkPlacement', () => {
 		expect(codesAt(0.1, 0.1, changes)).toEqual([]);
 		expect(codesAt(0.101, 0.1, changes)).toEqual(['overlap']);
 		expect(codesAt(0.1, 0.101, changes)).toEqual(['keep-out']);
+	});
+
+	it('agrees with a comparison of all pairs', () => {
+		const places = fc.array(
+			fc.record({
+				xUm: fc.integer({ min: 0, max: 60 }),
+				yUm: fc.integer({ min: 0, max: 60 }),
+				orient: fc.constantFrom('R0' as const, 'R90' as const, 'MX' as const)
+			}),
+			{ minLength: 2, maxLength: 12 }
+		);
+		fc.assert(
+			fc.property(places, fc.nat(8), (all, spacingUm) => {
+				const regulators = all.map((place, i) => ({
+					...example.regulators[0],
+					...place,
+					id: `R${i}`
+				}));
+				const floorplan = { ...example, regulators, sites: undefined, limits: { spacingUm } };
+				const index = buildPlacementIndex(floorplan);
+				for (const one of regulators) {
+					const found = checkPlacement(index, one)
+						.filter(({ other }) => other !== undefined)
+						.map(({ code, other }) => `${code} ${other}`);
+					const expected = regulators.flatMap((other) => {
+						if (other === one) return [];
+						// Cells are 20 by 10 um; whole numbers, so that nothing is rounded.
+						const [w1, h1] = one.orient === 'R90' ? [10, 20] : [20, 10];
+						const [w2, h2] = other.orient === 'R90' ? [10, 20] : [20, 10];
+						const dx = Math.max(one.xUm - (other.xUm + w2), other.xUm - (one.xUm + w1));
+						const dy = Math.max(one.yUm - (other.yUm + h2), other.yUm - (one.yUm + h1));
+						if (dx < 0 && dy < 0) return [`overlap ${other.id}`];
+						const gap = Math.max(dx, 0) ** 2 + Math.max(dy, 0) ** 2;
+						return gap < spacingUm ** 2 ? [`spacing ${other.id}`] : [];
+					});
+					expect(found.sort()).toEqual(expected.sort());
+				}
+			})
+		);
 	});
 
 	it('units that move along are ignored', () => {
