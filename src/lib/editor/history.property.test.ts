@@ -63,7 +63,7 @@ function perform(driver: EditorDriver, action: Action): void {
 
 it('any actions: undo all gives the first document, redo all the last, to the hash', () => {
 	fc.assert(
-		fc.property(fc.array(actionArbitrary, { minLength: 1, maxLength: 200 }), (actions) => {
+		fc.property(fc.array(actionArbitrary, { minLength: 150, maxLength: 200 }), (actions) => {
 			const driver = new EditorDriver(smallPlan());
 			const first = driver.hash;
 			for (const action of actions) {
