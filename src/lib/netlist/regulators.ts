@@ -8,6 +8,13 @@ import { safeIds } from './names.ts';
  */
 export const WALL_OHM = 1e7;
 
+/**
+ * Leak of the node that stands for a slow loop's correction, ohm. Where every unit of the net stands
+ * at a bound the correction moves nothing, and without it the equations would be singular; the
+ * mean is off by 1e-9 of the correction.
+ */
+const CORRECTION_LEAK_OHM = 1e9;
+
 /** The voltage of a node against a reference; ideal and quiet ground are node 0. */
 export function voltageOf(node: string, reference: string): string {
 	return reference === '0' ? `v(${node})` : `v(${node},${reference})`;
@@ -97,6 +104,7 @@ export function senseLines(
 		}).join('+');
 		return [
 			`* shared slow loop of net ${id}: v(${u}) is added to every set point`,
+			`ru_${ids[net]} ${u} 0 ${CORRECTION_LEAK_OHM}`,
 			`bu_${ids[net]} 0 ${u} i=(${volts})-(${mean})-${beyond(`v(${u})-${rangeV}`)}+${beyond(`-${rangeV}-v(${u})`)}`
 		];
 	});
