@@ -21,8 +21,8 @@ const BACKSLASH = 0x5c;
 const NUMBER = /-?(?:0|[1-9][0-9]*)(?:\.[0-9]+)?(?:[eE][+-]?[0-9]+)?/y;
 const WORD = /true|false|null/y;
 const SPACE = /[ \t\n\r]*/y;
-/** A string up to its end, or up to what may not stand in it; linear, without alternatives. */
-const PLAIN = /[^"\\\u0000-\u001f]*/y;
+/** What stands in a text as it is: from the space up, save the quote and the backslash. */
+const PLAIN = /[ !#-[\]-\uffff]*/y;
 const ESCAPE = /\\(?:["\\/bfnrt]|u[0-9a-fA-F]{4})/y;
 
 /**
