@@ -1,12 +1,12 @@
 import { count, eq, sql } from 'drizzle-orm';
-import type { ProjectRole } from '#lib/contracts/index.ts';
+import type { FloorplanSummary, ProjectRole } from '#lib/contracts/index.ts';
 import { makeDemoFloorplan } from '#lib/demo/index.ts';
 import { openStacks } from '#lib/library/index.ts';
 import type { Actor } from '../audit.ts';
 import { hashPassword } from '../auth/password.ts';
 import type { Database } from '../db/client.ts';
 import { libraryItems, projectMembers, projects, teams, users } from '../db/schema/index.ts';
-import { insertFloorplan } from './floorplans.ts';
+import { createFloorplan, insertFloorplan } from './floorplans.ts';
 import { requestSolves } from './solves.ts';
 
 /** The invented people of the demo, all with the same password: a demo keeps no secrets. */
@@ -107,4 +107,15 @@ export async function loadDemo(db: Database): Promise<DemoAccounts | null> {
 	if (loaded) await requestSolves(db, loaded.placer, loaded.floorplanId, {});
 	const [demo] = await db.select({ id: teams.id }).from(teams).where(eq(teams.name, TEAM));
 	return demo ? accounts : null;
+}
+
+/** Adds a copy of the demo's floorplan to a project, under a name of its own where one is given. */
+export function addDemoFloorplan(
+	db: Database,
+	actor: Actor,
+	projectId: string,
+	name: string
+): Promise<FloorplanSummary> {
+	const document = makeDemoFloorplan();
+	return createFloorplan(db, actor, projectId, name || (document.name ?? 'Demo'), document);
 }

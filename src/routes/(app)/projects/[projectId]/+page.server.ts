@@ -1,8 +1,10 @@
+import { redirect } from '@sveltejs/kit';
 import { database } from '#lib/server/db/client.ts';
 import { loading, requireActor } from '#lib/server/guard.ts';
+import { addDemoFloorplan } from '#lib/server/services/demo.ts';
 import { getProject } from '#lib/server/services/projects.ts';
 import { getTeam } from '#lib/server/services/team.ts';
-import type { PageServerLoad } from './$types';
+import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
 	const actor = requireActor(event);
@@ -12,4 +14,16 @@ export const load: PageServerLoad = async (event) => {
 		people: (await getTeam(database(), actor)).people,
 		isTeamAdmin: actor.isTeamAdmin
 	}));
+};
+
+export const actions: Actions = {
+	demo: async (event) => {
+		const actor = requireActor(event);
+		const name = (await event.request.formData()).get('name');
+		const title = typeof name === 'string' ? name.trim().slice(0, 120) : '';
+		const { id } = await loading(() =>
+			addDemoFloorplan(database(), actor, event.params.projectId, title)
+		);
+		redirect(303, `/floorplans/${id}`);
+	}
 };
