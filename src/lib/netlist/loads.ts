@@ -14,15 +14,15 @@ const COLLAPSE_FRACTION = 0.1;
 export const MAX_NODES_WITH_COLLAPSE = 5000;
 
 /**
- * The current over its nominal as an expression of x = v / volts (model section 4.3). A law that
- * rises as the voltage falls has a collapsed answer too, which a simulator would find first, since
- * it starts from 0 V: for x = 0 exactly such a load is given its nominal current.
+ * The current over its nominal as an expression of x = v / volts (model section 4.3). A simulator
+ * starts from 0 V, where it would take the collapsed part for the law: it could find the collapsed
+ * answer of a load that draws more as its voltage falls, and orders its equations for a network
+ * that the loads tie to ground. For x = 0 exactly a load is therefore given its nominal current.
  */
 function lawOf(x: string, exponent: number): string {
 	const slope = Math.pow(COLLAPSE_FRACTION, exponent - 1);
 	const power = exponent === 0 ? '1' : `pow(${x},${exponent})`;
-	const law = `(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power})`;
-	return exponent < 0 ? `(${x}==0?1:${law})` : law;
+	return `(${x}==0?1:(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power}))`;
 }
 
 /** Every attachment of a block's current as a source to its local ground. */

@@ -10,10 +10,11 @@ export const WALL_OHM = 1e7;
 
 /**
  * Leak of the node that stands for a slow loop's correction, ohm. Where every unit of the net stands
- * at a bound the correction moves nothing, and without it the equations would be singular; the
- * mean is off by 1e-9 of the correction.
+ * at a bound the correction moves nothing, and without a leak the equations would be singular. Less
+ * of it would cost digits where a simulator has ordered its equations in such a state; this much
+ * moves the mean by 1e-7 of the correction.
  */
-const CORRECTION_LEAK_OHM = 1e9;
+const CORRECTION_LEAK_OHM = 1e7;
 
 /** The voltage of a node against a reference; ideal and quiet ground are node 0. */
 export function voltageOf(node: string, reference: string): string {
@@ -24,9 +25,12 @@ function nameOf(names: readonly string[], node: number): string {
 	return node < 0 ? '0' : names[node];
 }
 
-/** `max(a, 0)` with 0 on the tie, so that a unit that stands at a bound counts as within it. */
+/**
+ * The steep wall beyond a bound: 0 within it and on the bound itself. The tie matters, since a
+ * simulator starts on it, with no current, and orders its equations by the slopes that it finds.
+ */
 function beyond(excess: string): string {
-	return `${WALL_OHM}*max(${excess},0)`;
+	return `${WALL_OHM}*((${excess})>0?(${excess}):0)`;
 }
 
 /**
