@@ -36,6 +36,11 @@ export interface DocumentKeeper {
 	submit(draft: EditDraft): ApplyResult;
 }
 
+/** Something that was not done; a new object each time, so that the same words can be told twice. */
+export interface Refusal {
+	readonly message: string;
+}
+
 export interface EditorOptions {
 	/** Whether the person may change blocks, modes, corners and limits; default: who may draw may. */
 	readonly canEditLoads?: boolean;
@@ -61,6 +66,7 @@ export class Editor implements ToolHost {
 	#keeper: DocumentKeeper;
 	#scene: SceneIndex;
 	#placements: PlacementIndex | null = null;
+	#problems: ReadonlyMap<string, PlacementReason[]> | null = null;
 	#listeners = new Set<Listener>();
 	#state: ToolState;
 	#history = new History();
@@ -76,7 +82,7 @@ export class Editor implements ToolHost {
 	/** Whether the person may change blocks, modes, corners and limits. */
 	canEditLoads: boolean;
 	/** Why the last edit did not take effect; cleared by the next one that does. */
-	refusal: string | null = null;
+	refusal: Refusal | null = null;
 	camera: Camera = { centreXUm: 0, centreYUm: 0, pxPerUm: 0.1, widthPx: 1, heightPx: 1 };
 	/** The camera still follows the canvas's size: nobody has moved it yet. */
 	#isFitted = true;
@@ -127,6 +133,16 @@ export class Editor implements ToolHost {
 		return this.#placements;
 	}
 
+	/** Reasons against the regulators that stand illegally, by id, in document order. */
+	get problems(): ReadonlyMap<string, readonly PlacementReason[]> {
+		this.#problems ??= new Map(
+			this.#floorplan.regulators
+				.map((regulator) => [regulator.id, this.reasonsAgainst(regulator)] as const)
+				.filter(([, reasons]) => reasons.length > 0)
+		);
+		return this.#problems;
+	}
+
 	subscribe(listener: Listener): () => void {
 		this.#listeners.add(listener);
 		return () => this.#listeners.delete(listener);
@@ -142,6 +158,7 @@ export class Editor implements ToolHost {
 		this.#floorplan = floorplan;
 		this.#scene = new SceneIndex(floorplan);
 		this.#placements = null;
+		this.#problems = null;
 		const kept = [...this.selection].filter((key) => this.#exists(key));
 		if (kept.length < this.selection.size) this.selection = new Set(kept);
 		if (this.hovered && !this.#exists(this.hovered)) this.hovered = null;
@@ -167,13 +184,15 @@ export class Editor implements ToolHost {
 	#submit(draft: EditDraft): readonly Operation[] | null {
 		const result = this.#keeper.submit(draft);
 		this.refusal =
-			result.status === 'applied' ? null : `${draft.label}: not done. ${explainFailure(result)}`;
+			result.status === 'applied'
+				? null
+				: { message: `${draft.label}: not done. ${explainFailure(result)}` };
 		return result.status === 'applied' ? result.inverse : null;
 	}
 
 	/** Tells the person why something was not done. */
-	refuse(reason: string): void {
-		this.refusal = reason;
+	refuse(message: string): void {
+		this.refusal = { message };
 		this.changed();
 	}
 

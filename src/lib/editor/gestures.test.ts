@@ -191,7 +191,7 @@ describe('dragging', () => {
 		const driver = open();
 		driver.drag([420, 110], [500, 110]);
 		expect(driver.placeOf('F')).toEqual([400, 100]);
-		expect(driver.editor.refusal).toContain('F is fixed');
+		expect(driver.editor.refusal?.message).toContain('F is fixed');
 		driver.key('Shift+a');
 		driver.drag(onR1, [120, 160]);
 		expect(driver.placeOf('F')).toEqual([400, 100]);
@@ -232,6 +232,17 @@ describe('dragging', () => {
 		expect(driver.edits.map(({ label }) => label)).toEqual(['Move block cpu']);
 		driver.key('Mod+a');
 		expect(driver.key('Delete')).toBe(false);
+	});
+});
+
+describe('standing illegally', () => {
+	it('is known of every unit after every edit, and over when it has been moved', () => {
+		const driver = new EditorDriver(smallPlan());
+		expect([...driver.editor.problems.keys()]).toEqual([]);
+		driver.drag(onR1, onR2);
+		expect([...driver.editor.problems.keys()]).toEqual(['R1', 'R2']);
+		driver.key('Mod+z');
+		expect([...driver.editor.problems.keys()]).toEqual([]);
 	});
 });
 
@@ -361,7 +372,7 @@ describe('duplicating and deleting', () => {
 		const driver = open().click(420, 110);
 		driver.key('Delete');
 		expect(driver.editor.floorplan.regulators).toHaveLength(4);
-		expect(driver.editor.refusal).toContain('fixed');
+		expect(driver.editor.refusal?.message).toContain('fixed');
 		driver.key('l');
 		driver.key('Delete');
 		expect(driver.editor.floorplan.regulators).toHaveLength(3);
@@ -402,7 +413,7 @@ describe('history beside other people', () => {
 		driver.receive(changeField(floorplan, 'regulators', ['R1'], 'xUm', 700));
 		driver.key('Mod+z');
 		expect(driver.placeOf('R1')).toEqual([700, 150]);
-		expect(driver.editor.refusal).toContain('xUm of R1');
+		expect(driver.editor.refusal?.message).toContain('xUm of R1');
 	});
 
 	it('a step that no longer fits is given up, and the one before it can be undone', () => {
@@ -411,7 +422,7 @@ describe('history beside other people', () => {
 		driver.drag(onR1, [140, 160]);
 		driver.receive(removeItems(driver.editor.floorplan, [{ list: 'regulators', id: 'R1' }]));
 		driver.key('Mod+z');
-		expect(driver.editor.refusal).toContain('R1');
+		expect(driver.editor.refusal?.message).toContain('R1');
 		driver.key('Mod+z');
 		expect(driver.placeOf('R2')).toEqual([200, 100]);
 	});

@@ -1,6 +1,6 @@
 export type { Camera } from './camera.ts';
 export { toDie, toScreen, viewOf } from './camera.ts';
-export type { DocumentKeeper, EditorOptions } from './editor.ts';
+export type { DocumentKeeper, EditorOptions, Refusal } from './editor.ts';
 export { Editor } from './editor.ts';
 export type { DragPreview, Ghost, Overlay } from './overlay.ts';
 export type { Guide } from './snapping.ts';

@@ -38,7 +38,7 @@ describe('placing', () => {
 		expect(driver.editor.overlay.ghost?.reasons.map((reason) => reason.code)).toContain(code);
 		driver.click(xUm, yUm);
 		expect(driver.edits).toEqual([]);
-		expect(driver.editor.refusal).toContain('Not placed');
+		expect(driver.editor.refusal?.message).toContain('Not placed');
 	});
 
 	it('Alt places anywhere, off the sites too', () => {
