@@ -1,17 +1,26 @@
 import type { Floorplan } from '#lib/floorplan/index.ts';
-import type { ResultFile } from '#lib/results/index.ts';
-import { formatQuantity, type Unit } from '#lib/units/index.ts';
-import type { DataColumn } from '#lib/components/ui/DataTable.svelte';
+import type { FindingKind, RegulatorResult, ResultFile } from '#lib/results/index.ts';
+import type { DataColumn } from '#lib/components/ui/data-column.ts';
 
-type State = ResultFile['regulators'][number]['state'];
+export type RegulatorState = RegulatorResult['state'];
+
+/** The states in words, as every screen says them. */
+export const STATE_WORDS: Readonly<Record<RegulatorState, string>> = {
+	regulating: 'regulating',
+	limited: 'limited',
+	idle: 'idle',
+	dropout: 'drop-out',
+	off: 'off'
+};
 
 export interface RegulatorRow {
 	readonly id: string;
+	readonly name: string | undefined;
 	readonly cell: string;
 	readonly net: string;
 	readonly amps: number | null;
 	readonly loadFraction: number | null;
-	readonly state: State | null;
+	readonly state: RegulatorState | null;
 	readonly headroomV: number | null;
 	readonly lossW: number | null;
 	readonly setV: number | null;
@@ -21,17 +30,21 @@ export interface RegulatorRow {
 
 export interface BlockRow {
 	readonly id: string;
+	readonly name: string | undefined;
 	readonly net: string;
 	readonly amps: number;
 	readonly worstDropV: number | null;
 	readonly netDropV: number | null;
 	readonly groundRiseV: number | null;
+	readonly limitV: number | null;
 	readonly marginV: number | null;
+	readonly meanV: number | null;
 	readonly minV: number | null;
 }
 
 export interface FeedRow {
 	readonly id: string;
+	readonly name: string | undefined;
 	readonly net: string;
 	readonly xUm: number;
 	readonly yUm: number;
@@ -46,10 +59,11 @@ function byId<T extends { readonly id: string }>(list: readonly T[] | undefined)
 /** The regulators of a floorplan with what a result says of each. */
 export function regulatorRows(floorplan: Floorplan, result: ResultFile | null): RegulatorRow[] {
 	const found = byId(result?.regulators);
-	return floorplan.regulators.map(({ id, cell, output, enabled }) => {
+	return floorplan.regulators.map(({ id, name, cell, output, enabled }) => {
 		const reading = found.get(id);
 		return {
 			id,
+			name,
 			cell,
 			net: output,
 			amps: reading?.amps ?? null,
@@ -71,16 +85,19 @@ export function blockRows(
 	modeId: string
 ): BlockRow[] {
 	const found = byId(result?.blocks);
-	return floorplan.blocks.map(({ id, net, amps }) => {
+	return floorplan.blocks.map(({ id, name, net, amps }) => {
 		const reading = found.get(id);
 		return {
 			id,
+			name,
 			net,
 			amps: reading?.amps ?? amps[modeId] ?? 0,
 			worstDropV: reading?.worstDropV ?? null,
 			netDropV: reading?.netDropV ?? null,
 			groundRiseV: reading?.groundRiseV ?? null,
+			limitV: reading?.limitV ?? null,
 			marginV: reading?.marginV ?? null,
+			meanV: reading?.meanV ?? null,
 			minV: reading?.minV ?? null
 		};
 	});
@@ -88,8 +105,9 @@ export function blockRows(
 
 export function feedRows(floorplan: Floorplan, result: ResultFile | null): FeedRow[] {
 	const found = byId(result?.feeds);
-	return floorplan.feeds.map(({ id, net, xUm, yUm }) => ({
+	return floorplan.feeds.map(({ id, name, net, xUm, yUm }) => ({
 		id,
+		name,
 		net,
 		xUm,
 		yUm,
@@ -98,82 +116,99 @@ export function feedRows(floorplan: Floorplan, result: ResultFile | null): FeedR
 	}));
 }
 
-const DIGITS = 4;
-/** Columns are read downwards: one prefix for all of a column. */
+/** Columns are read downwards: one prefix and one number of decimals for all of a column. */
 const MILLI = 1e-3;
+const PERCENT = 1e-2;
 
-/** A column of quantities shown in thousandths, whose unit stands in the header. */
-function milliColumn<Row>(
+/** A column of quantities shown as multiples of a factor, whose unit stands in the header. */
+function scaled<Row>(
 	id: string,
 	header: string,
-	unit: Unit,
-	symbol: string,
+	unit: string,
+	factor: number,
+	decimals: number,
 	read: (row: Row) => number | null
 ): DataColumn<Row> {
 	return {
 		id,
 		header,
-		unit: symbol,
+		unit,
+		decimals,
 		isNumeric: true,
 		value: (row) => {
 			const value = read(row);
-			return value === null ? null : value / MILLI;
-		},
-		text: (row) => {
-			const value = read(row);
-			if (value === null) return '–';
-			return formatQuantity(value, unit, { digits: DIGITS, factor: MILLI }).replace(/ \S+$/, '');
+			return value === null ? null : value / factor;
 		}
 	};
 }
 
-function percentColumn<Row>(read: (row: Row) => number | null): DataColumn<Row> {
-	return {
-		id: 'load',
-		header: 'Load',
-		unit: '%',
-		isNumeric: true,
-		value: (row) => {
-			const value = read(row);
-			return value === null ? null : value * 100;
-		},
-		text: (row) => {
-			const value = read(row);
-			return value === null ? '–' : formatQuantity(value, 'fraction', { digits: 3 });
-		}
-	};
-}
+const titled = ({ id, name }: { readonly id: string; readonly name?: string }) =>
+	name ? `${id}, ${name}` : id;
 
 export const regulatorColumns: readonly DataColumn<RegulatorRow>[] = [
-	{ id: 'id', header: 'Regulator', value: ({ id }) => id },
+	{ id: 'id', header: 'Regulator', value: titled },
 	{ id: 'net', header: 'Net', value: ({ net }) => net },
 	{ id: 'cell', header: 'Cell', value: ({ cell }) => cell },
-	{ id: 'state', header: 'State', value: ({ state }) => state },
-	milliColumn('amps', 'Current', 'A', 'mA', ({ amps }) => amps),
-	percentColumn(({ loadFraction }) => loadFraction),
-	milliColumn('headroom', 'Headroom', 'V', 'mV', ({ headroomV }) => headroomV),
-	milliColumn('loss', 'Loss', 'W', 'mW', ({ lossW }) => lossW),
-	milliColumn('set', 'Set point', 'V', 'mV', ({ setV }) => setV),
-	milliColumn('out', 'Output', 'V', 'mV', ({ outV }) => outV),
-	milliColumn('in', 'Input', 'V', 'mV', ({ inV }) => inV)
+	{
+		id: 'state',
+		header: 'State',
+		value: ({ state }) => (state === null ? null : STATE_WORDS[state])
+	},
+	scaled('amps', 'Current', 'mA', MILLI, 2, ({ amps }) => amps),
+	scaled('load', 'Load', '%', PERCENT, 1, ({ loadFraction }) => loadFraction),
+	scaled('headroom', 'Headroom', 'mV', MILLI, 1, ({ headroomV }) => headroomV),
+	scaled('loss', 'Loss', 'mW', MILLI, 2, ({ lossW }) => lossW),
+	scaled('set', 'Set point', 'mV', MILLI, 1, ({ setV }) => setV),
+	scaled('out', 'Output', 'mV', MILLI, 1, ({ outV }) => outV),
+	scaled('in', 'Input', 'mV', MILLI, 1, ({ inV }) => inV)
 ];
 
 export const blockColumns: readonly DataColumn<BlockRow>[] = [
-	{ id: 'id', header: 'Block', value: ({ id }) => id },
+	{ id: 'id', header: 'Block', value: titled },
 	{ id: 'net', header: 'Net', value: ({ net }) => net },
-	milliColumn('amps', 'Current', 'A', 'mA', ({ amps }) => amps),
-	milliColumn('drop', 'Worst drop', 'V', 'mV', ({ worstDropV }) => worstDropV),
-	milliColumn('netDrop', 'Net side', 'V', 'mV', ({ netDropV }) => netDropV),
-	milliColumn('groundRise', 'Ground side', 'V', 'mV', ({ groundRiseV }) => groundRiseV),
-	milliColumn('margin', 'Margin', 'V', 'mV', ({ marginV }) => marginV),
-	milliColumn('min', 'Lowest supply', 'V', 'mV', ({ minV }) => minV)
+	scaled('amps', 'Current', 'mA', MILLI, 2, ({ amps }) => amps),
+	scaled('drop', 'Worst drop', 'mV', MILLI, 2, ({ worstDropV }) => worstDropV),
+	scaled('netDrop', 'Net side', 'mV', MILLI, 2, ({ netDropV }) => netDropV),
+	scaled('groundRise', 'Ground side', 'mV', MILLI, 2, ({ groundRiseV }) => groundRiseV),
+	scaled('limit', 'Limit', 'mV', MILLI, 1, ({ limitV }) => limitV),
+	scaled('margin', 'Margin', 'mV', MILLI, 2, ({ marginV }) => marginV),
+	scaled('mean', 'Mean supply', 'mV', MILLI, 1, ({ meanV }) => meanV),
+	scaled('min', 'Least supply', 'mV', MILLI, 1, ({ minV }) => minV)
 ];
 
 export const feedColumns: readonly DataColumn<FeedRow>[] = [
-	{ id: 'id', header: 'Bump', value: ({ id }) => id },
+	{ id: 'id', header: 'Bump', value: titled },
 	{ id: 'net', header: 'Net', value: ({ net }) => net },
-	{ id: 'x', header: 'x', unit: 'µm', isNumeric: true, value: ({ xUm }) => xUm },
-	{ id: 'y', header: 'y', unit: 'µm', isNumeric: true, value: ({ yUm }) => yUm },
-	milliColumn('amps', 'Current', 'A', 'mA', ({ amps }) => amps),
-	percentColumn(({ loadFraction }) => loadFraction)
+	scaled('x', 'x', 'µm', 1, 3, ({ xUm }) => xUm),
+	scaled('y', 'y', 'µm', 1, 3, ({ yUm }) => yUm),
+	scaled('amps', 'Current', 'mA', MILLI, 2, ({ amps }) => amps),
+	scaled('load', 'Load', '%', PERCENT, 1, ({ loadFraction }) => loadFraction)
 ];
+
+/** The column in which a finding about a row shows. */
+const COLUMN_OF: Partial<Record<FindingKind, string>> = {
+	drop: 'drop',
+	collapsed: 'min',
+	'regulator-load': 'load',
+	'below-min-current': 'amps',
+	headroom: 'headroom',
+	'feed-load': 'load',
+	placement: 'id'
+};
+
+/** Cells of a list's rows that break a limit, as "id column". */
+export function brokenCells(
+	result: ResultFile | null,
+	list: 'regulators' | 'blocks' | 'feeds'
+): ReadonlySet<string> {
+	return new Set(
+		(result?.findings ?? []).flatMap((finding) => {
+			const column = COLUMN_OF[finding.kind];
+			return finding.list === list && column ? [cellKey(finding.subject, column)] : [];
+		})
+	);
+}
+
+export function cellKey(id: string, column: string): string {
+	return `${id} ${column}`;
+}
