@@ -116,3 +116,40 @@ export function assembleLaplacian(
 	}
 	return { n, rowStart, column, value };
 }
+
+/**
+ * A symmetric matrix from the entries of one triangle (rows, columns, values; any order, duplicates
+ * summed). Diagonal entries that are not given are zero.
+ */
+export function assembleEntries(
+	n: number,
+	rows: Int32Array,
+	columns: Int32Array,
+	values: Float64Array
+): SymmetricMatrix {
+	const isOff = (e: number) => rows[e] !== columns[e];
+	let off = 0;
+	for (let e = 0; e < rows.length; e++) if (isOff(e)) off++;
+	const from = new Int32Array(off);
+	const to = new Int32Array(off);
+	const offValue = new Float64Array(off);
+	const diagonal = new Float64Array(n);
+	let next = 0;
+	for (let e = 0; e < rows.length; e++) {
+		if (!isOff(e)) {
+			diagonal[rows[e]] += values[e];
+			continue;
+		}
+		from[next] = rows[e];
+		to[next] = columns[e];
+		offValue[next++] = values[e];
+	}
+	const { rowStart, column, upperEntry, lowerEntry, diagonalEntry } = planAssembly(n, from, to);
+	const value = new Float64Array(column.length);
+	for (let i = 0; i < n; i++) value[diagonalEntry[i]] = diagonal[i];
+	for (let e = 0; e < off; e++) {
+		value[upperEntry[e]] += offValue[e];
+		value[lowerEntry[e]] += offValue[e];
+	}
+	return { n, rowStart, column, value };
+}

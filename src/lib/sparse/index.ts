@@ -1,6 +1,6 @@
 export type { SymmetricMatrix } from './matrix.ts';
 export type { AssemblyPlan } from './assemble.ts';
-export { assembleLaplacian, planAssembly } from './assemble.ts';
+export { assembleEntries, assembleLaplacian, planAssembly } from './assemble.ts';
 export { multiply, norm2, relativeResidual } from './multiply.ts';
 export { orderNestedDissection } from './nested-dissection.ts';
 export { levelCoordinates } from './level-coordinates.ts';
