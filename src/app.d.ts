@@ -1,5 +1,6 @@
 import type { Actor } from '#lib/server/audit.ts';
 import type { Session } from '#lib/server/auth/session.ts';
+import type { Problem } from '#lib/server/problem.ts';
 
 declare global {
 	namespace App {
@@ -13,6 +14,8 @@ declare global {
 			session: Session | null;
 			/** Whoever is signed in, as services want to know them. */
 			actor: Actor | null;
+			/** Why it could not be found out who is signed in. */
+			unavailable: Problem | null;
 		}
 	}
 }

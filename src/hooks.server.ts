@@ -1,12 +1,6 @@
 import type { ServerInit } from '@sveltejs/kit';
 import { sequence } from '@sveltejs/kit/hooks';
-import {
-	apiProblems,
-	refuseCrossSite,
-	requestId,
-	securityHeaders,
-	session
-} from '#lib/server/hooks/index.ts';
+import { HOOKS } from '#lib/server/hooks/index.ts';
 import { closeRuntime } from '#lib/server/runtime.ts';
 
 export { handleError } from '#lib/server/hooks/index.ts';
@@ -15,4 +9,4 @@ export const init: ServerInit = () => {
 	process.on('sveltekit:shutdown', () => void closeRuntime());
 };
 
-export const handle = sequence(requestId, securityHeaders, apiProblems, refuseCrossSite, session);
+export const handle = sequence(...HOOKS);

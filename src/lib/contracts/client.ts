@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { resultFileSchema, type ResultFile } from '#lib/results/index.ts';
+import { sessionSchema, type SessionAnswer } from './account.ts';
 import { jobSchema, type Job } from './jobs.ts';
 import {
 	editAcceptedSchema,
@@ -12,6 +13,7 @@ import {
 } from './floorplans.ts';
 import { problemSchema, type ProblemDocument } from './problem.ts';
 import {
+	floorplanListSchema,
 	floorplanSummarySchema,
 	projectListSchema,
 	projectSchema,
@@ -79,6 +81,8 @@ export function createClient(fetcher: Fetch) {
 	const floorplan = (id: string) => `/floorplans/${encodeURIComponent(id)}`;
 	const project = (id: string) => `/projects/${encodeURIComponent(id)}`;
 	return {
+		getSession: (): Promise<SessionAnswer> =>
+			requestJson(fetcher, 'GET', '/session', sessionSchema),
 		listProjects: async (): Promise<ProjectSummary[]> =>
 			(await requestJson(fetcher, 'GET', '/projects', projectListSchema)).projects,
 		getProject: (id: string): Promise<Project> =>
@@ -93,6 +97,9 @@ export function createClient(fetcher: Fetch) {
 		removeMember: async (id: string, userId: string): Promise<void> => {
 			await request(fetcher, 'DELETE', `${project(id)}/members/${encodeURIComponent(userId)}`);
 		},
+		listFloorplans: async (id: string): Promise<FloorplanSummary[]> =>
+			(await requestJson(fetcher, 'GET', `${project(id)}/floorplans`, floorplanListSchema))
+				.floorplans,
 		createFloorplan: (id: string, name: string, document?: unknown): Promise<FloorplanSummary> =>
 			requestJson(fetcher, 'POST', `${project(id)}/floorplans`, floorplanSummarySchema, {
 				name,
@@ -108,6 +115,8 @@ export function createClient(fetcher: Fetch) {
 			requestJson(fetcher, 'GET', `${floorplan(id)}/solves`, solvesSchema),
 		requestSolves: (id: string, wanted: { mode?: string; corner?: string }): Promise<Solves> =>
 			requestJson(fetcher, 'POST', `${floorplan(id)}/solves`, solvesSchema, wanted),
+		getJob: (id: string): Promise<Job> =>
+			requestJson(fetcher, 'GET', `/jobs/${encodeURIComponent(id)}`, jobSchema),
 		cancelJob: (id: string): Promise<Job> =>
 			requestJson(fetcher, 'POST', `/jobs/${encodeURIComponent(id)}/cancel`, jobSchema),
 		getResult: (id: string): Promise<ResultFile> =>

@@ -6,8 +6,10 @@ export type { Job, JobFailure, JobState } from './jobs.ts';
 export { isFinished, JOB_STATES, jobSchema } from './jobs.ts';
 export type { FloorplanSummary, Member, Project, ProjectSummary } from './projects.ts';
 export {
+	addDemoSchema,
 	createFloorplanSchema,
 	createProjectSchema,
+	floorplanListSchema,
 	floorplanSummarySchema,
 	projectListSchema,
 	projectSchema,

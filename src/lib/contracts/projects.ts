@@ -29,6 +29,8 @@ export const floorplanSummarySchema = z.object({
 });
 export type FloorplanSummary = z.infer<typeof floorplanSummarySchema>;
 
+export const floorplanListSchema = z.object({ floorplans: z.array(floorplanSummarySchema) });
+
 export const memberSchema = z.object({
 	userId: z.uuid(),
 	name: z.string(),
@@ -52,6 +54,11 @@ export const projectSchema = projectSummarySchema.extend({ members: z.array(memb
 export type Project = z.infer<typeof projectSchema>;
 
 export const setMemberSchema = z.strictObject({ role: z.enum(PROJECT_ROLES) });
+
+/** Asks for a copy of the demo, under its own name where none is given. */
+export const addDemoSchema = z.object({
+	name: z.string().trim().max(120, 'At most 120 characters').default('')
+});
 
 export const createFloorplanSchema = z.strictObject({
 	name: titleSchema,

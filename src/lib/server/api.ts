@@ -14,7 +14,8 @@ export function operation<Event extends RequestEvent>(
 ): (event: Event) => Promise<Response> {
 	return (event) =>
 		answering(event.locals.requestId, () => {
-			const { actor } = event.locals;
+			const { actor, unavailable } = event.locals;
+			if (unavailable) throw unavailable;
 			if (!actor) throw new Problem('not-signed-in', 'Sign in to use this address.');
 			return work(event, actor);
 		});

@@ -23,8 +23,10 @@ const configSchema = z.object({
 	MANYWEIR_DATABASE_CONNECTIONS: z.coerce.number().int().min(1).max(100).default(10),
 	/** The bundled thread in which a solve runs. */
 	MANYWEIR_SOLVE_THREAD: z.string().default('build/worker/solve-thread.js'),
-	/** Memory that one solve may use, MB; beyond it the solve fails and the worker goes on. */
+	/** Memory that a worker may use in one solve, MB; beyond it the solve fails and the worker goes on. */
 	MANYWEIR_SOLVE_MEMORY_MB: z.coerce.number().int().min(64).default(4096),
+	/** Time that one solve may take, s; beyond it the solve fails and the worker goes on. */
+	MANYWEIR_SOLVE_SECONDS: z.coerce.number().int().min(1).default(1800),
 	/** Folder in which the local mail fake keeps its messages. */
 	MANYWEIR_MAIL_FOLDER: z.string().default('.manyweir/mail'),
 	/** How much is logged. */

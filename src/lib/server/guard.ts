@@ -18,6 +18,8 @@ export function ownPath(path: string, fallback: string): string {
 /** Whoever is signed in; others are sent to sign in and come back afterwards. */
 export function requireActor(event: RequestEvent): Actor {
 	if (event.locals.actor) return event.locals.actor;
+	const { unavailable } = event.locals;
+	if (unavailable) error(unavailable.status, unavailable.message);
 	const next = event.url.pathname + event.url.search;
 	redirect(303, next === '/' ? '/sign-in' : `/sign-in?next=${encodeURIComponent(next)}`);
 }

@@ -99,6 +99,8 @@ export async function beginSession(
 	userAgent: string
 ): Promise<string> {
 	const token = generateIdFromEntropySize(TOKEN_BYTES);
+	// Now and then somebody signs in: a good moment to sweep what has ended.
+	await lucia(db).deleteExpiredSessions();
 	await lucia(db).createSession(
 		userId,
 		{ userAgent: userAgent.slice(0, 200) },

@@ -4,7 +4,11 @@ import { findJob } from '../jobs/job-rows.ts';
 import { log } from '../log.ts';
 import { EVENTS_CHANNEL, noticeSchema, type Notice } from './publish.ts';
 
-type Listener = (event: FloorplanEvent) => void;
+export interface EventListener {
+	onEvent(event: FloorplanEvent): void;
+	/** Events may have been missed while the database was away. */
+	onGap(): void;
+}
 
 /**
  * Passes what changed in the database on to the event streams of this process. One connection
@@ -12,32 +16,57 @@ type Listener = (event: FloorplanEvent) => void;
  */
 export class EventBus {
 	readonly #connection: Connection;
-	readonly #listeners = new Map<string, Set<Listener>>();
+	readonly #listeners = new Map<string, Set<EventListener>>();
 	#listening: Promise<unknown> | undefined;
+	#isConnected = false;
+	/** Notices are passed on one after the other: a job must not be told done, then running. */
+	#last: Promise<void> = Promise.resolve();
 
 	constructor(connection: Connection) {
 		this.#connection = connection;
 	}
 
 	/** Calls back on every event of a floorplan until the returned function is called. */
-	async subscribe(floorplanId: string, listener: Listener): Promise<() => void> {
+	async subscribe(floorplanId: string, listener: EventListener): Promise<() => void> {
 		const listeners = this.#listeners.get(floorplanId) ?? new Set();
 		this.#listeners.set(floorplanId, listeners);
 		listeners.add(listener);
-		this.#listening ??= this.#connection.sql.listen(EVENTS_CHANNEL, (payload) => {
-			this.#receive(payload).catch((error: unknown) => log.error({ error }, 'event not delivered'));
-		});
+		const unsubscribe = () => {
+			listeners.delete(listener);
+			if (listeners.size === 0 && this.#listeners.get(floorplanId) === listeners) {
+				this.#listeners.delete(floorplanId);
+			}
+		};
+		this.#listening ??= this.#listen();
 		try {
 			await this.#listening;
 		} catch (error) {
 			this.#listening = undefined;
-			listeners.delete(listener);
+			unsubscribe();
 			throw error;
 		}
-		return () => {
-			listeners.delete(listener);
-			if (listeners.size === 0) this.#listeners.delete(floorplanId);
-		};
+		return unsubscribe;
+	}
+
+	#listen(): Promise<unknown> {
+		return this.#connection.sql.listen(
+			EVENTS_CHANNEL,
+			(payload) => {
+				this.#last = this.#last
+					.then(() => this.#receive(payload))
+					.catch((error: unknown) => log.error({ error }, 'event not delivered'));
+			},
+			() => {
+				if (this.#isConnected) this.#tellGap();
+				this.#isConnected = true;
+			}
+		);
+	}
+
+	#tellGap(): void {
+		for (const listeners of [...this.#listeners.values()]) {
+			for (const listener of [...listeners]) listener.onGap();
+		}
 	}
 
 	async #receive(payload: string): Promise<void> {
@@ -45,7 +74,7 @@ export class EventBus {
 		if (!this.#listeners.has(notice.floorplanId)) return;
 		const event = await this.#toEvent(notice);
 		if (!event) return;
-		for (const listener of this.#listeners.get(notice.floorplanId) ?? []) listener(event);
+		for (const { onEvent } of [...(this.#listeners.get(notice.floorplanId) ?? [])]) onEvent(event);
 	}
 
 	async #toEvent(notice: Notice): Promise<FloorplanEvent | null> {

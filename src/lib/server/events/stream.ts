@@ -3,6 +3,7 @@ import { requireAccess } from '../access/access.ts';
 import type { Actor } from '../audit.ts';
 import { isSessionOpen } from '../auth/session.ts';
 import { database } from '../db/client.ts';
+import { log } from '../log.ts';
 import { eventBus, shutdownSignal } from '../runtime.ts';
 
 /** A comment line this often keeps proxies from closing the stream, and asks for access again. */
@@ -10,10 +11,100 @@ const KEEP_ALIVE_MS = 15_000;
 /** What the browser waits before it connects again, ms. */
 const RETRY_MS = 1000;
 
+interface Reader {
+	readonly floorplanId: string;
+	readonly actor: Actor;
+	readonly sessionId: string;
+}
+
+/** Whether the reader is still signed in and still sees the floorplan. */
+async function mayListen({ floorplanId, actor, sessionId }: Reader): Promise<boolean> {
+	if (!(await isSessionOpen(database(), sessionId))) return false;
+	try {
+		await requireAccess(database(), actor, 'project.view', { kind: 'floorplan', id: floorplanId });
+		return true;
+	} catch {
+		return false;
+	}
+}
+
+/** One reader's stream: everything that it is told goes through `#tell`, in order. */
+class EventStream {
+	readonly #reader: Reader;
+	readonly #controller: ReadableStreamDefaultController<Uint8Array>;
+	readonly #signals: readonly AbortSignal[];
+	readonly #encoder = new TextEncoder();
+	readonly #end = () => this.end();
+	readonly #keepAlive = setInterval(() => this.#tell(': still here\n\n'), KEEP_ALIVE_MS);
+	#unsubscribe = () => {};
+	#hasEnded = false;
+	#last: Promise<void> = Promise.resolve();
+
+	constructor(
+		reader: Reader,
+		controller: ReadableStreamDefaultController<Uint8Array>,
+		signals: readonly AbortSignal[]
+	) {
+		this.#reader = reader;
+		this.#controller = controller;
+		this.#signals = signals;
+		for (const signal of signals) signal.addEventListener('abort', this.#end);
+	}
+
+	async open(): Promise<void> {
+		this.#send(`retry: ${RETRY_MS}\n\n`);
+		try {
+			this.#unsubscribe = await eventBus().subscribe(this.#reader.floorplanId, {
+				onEvent: (event) => this.#tell(textOf(event)),
+				// The reader connects again and asks for what was missed.
+				onGap: this.#end
+			});
+		} catch (error) {
+			log.warn({ error }, 'event stream not opened');
+			this.end();
+		}
+		// The reader may have left while the subscription was under way.
+		if (this.#hasEnded) this.#unsubscribe();
+		else this.#send('event: ready\ndata: {}\n\n');
+	}
+
+	end(): void {
+		if (this.#hasEnded) return;
+		this.#hasEnded = true;
+		clearInterval(this.#keepAlive);
+		this.#unsubscribe();
+		for (const signal of this.#signals) signal.removeEventListener('abort', this.#end);
+		try {
+			this.#controller.close();
+		} catch {
+			// Closed from the reader's side already.
+		}
+	}
+
+	/** Sends once it is known that the reader may still listen. */
+	#tell(text: string): void {
+		this.#last = this.#last.then(async () => {
+			if (this.#hasEnded) return;
+			const isAllowed = await mayListen(this.#reader).catch(() => false);
+			if (isAllowed) this.#send(text);
+			else this.end();
+		});
+	}
+
+	#send(text: string): void {
+		if (!this.#hasEnded) this.#controller.enqueue(this.#encoder.encode(text));
+	}
+}
+
+function textOf(event: FloorplanEvent): string {
+	return `event: ${event.type}\ndata: ${JSON.stringify(event)}\n\n`;
+}
+
 /**
  * The events of a floorplan as a stream of server-sent events. It ends when the reader leaves, when
- * the server stops, and when the reader may no longer see the floorplan or has signed out. A reader
- * who was away asks for the edits after its version; jobs and results are read anew.
+ * the server stops, when events may have been missed, and when the reader may no longer see the
+ * floorplan or has signed out. A reader who was away asks for the edits after its version; jobs and
+ * results are read anew.
  */
 export function eventStream(
 	floorplanId: string,
@@ -21,49 +112,15 @@ export function eventStream(
 	sessionId: string,
 	signal: AbortSignal
 ): Response {
-	const encoder = new TextEncoder();
-	let end = () => {};
-	let unsubscribe = () => {};
+	let events: EventStream | undefined;
 	const stream = new ReadableStream<Uint8Array>({
 		start(controller) {
-			const send = (text: string) => controller.enqueue(encoder.encode(text));
-			const deliver = async (event: FloorplanEvent) => {
-				if (!(await mayListen())) return end();
-				send(`event: ${event.type}\ndata: ${JSON.stringify(event)}\n\n`);
-			};
-			const mayListen = async () => {
-				const isOpen = await isSessionOpen(database(), sessionId);
-				if (!isOpen) return false;
-				const subject = { kind: 'floorplan', id: floorplanId } as const;
-				return requireAccess(database(), actor, 'project.view', subject).then(
-					() => true,
-					() => false
-				);
-			};
-			const keepAlive = setInterval(() => {
-				mayListen().then((isAllowed) => (isAllowed ? send(': still here\n\n') : end()), end);
-			}, KEEP_ALIVE_MS);
-			end = () => {
-				end = () => {};
-				clearInterval(keepAlive);
-				unsubscribe();
-				signal.removeEventListener('abort', stop);
-				shutdownSignal.removeEventListener('abort', stop);
-				controller.close();
-			};
-			const stop = () => end();
-			signal.addEventListener('abort', stop);
-			shutdownSignal.addEventListener('abort', stop);
-			send(`retry: ${RETRY_MS}\n\n`);
-			eventBus()
-				.subscribe(floorplanId, (event) => void deliver(event).catch(() => end()))
-				.then((stopListening) => {
-					unsubscribe = stopListening;
-					send('event: ready\ndata: {}\n\n');
-				}, stop);
+			const signals = [signal, shutdownSignal];
+			events = new EventStream({ floorplanId, actor, sessionId }, controller, signals);
+			void events.open();
 		},
 		cancel() {
-			end();
+			events?.end();
 		}
 	});
 	return new Response(stream, {

@@ -4,7 +4,9 @@ import { Problem, problemResponse } from '../problem.ts';
 
 /** Postgres is not there, shuts down, or has no room: the request may work in a while. */
 const AWAY =
-	/^(ECONNREFUSED|ECONNRESET|CONNECT_TIMEOUT|CONNECTION_(CLOSED|ENDED|DESTROYED)|57P0\d|53\d{3}|08\d{3})$/;
+	/^(ECONNREFUSED|ECONNRESET|ETIMEDOUT|EHOSTUNREACH|EPIPE|CONNECT_TIMEOUT|CONNECTION_(CLOSED|ENDED|DESTROYED)|57P0\d|53\w{3}|08\w{3})$/;
+/** It is there, but the wait for a lock or the statement took too long. */
+const BUSY = /^(55P03|57014)$/;
 const RETRY_AFTER_SECONDS = 5;
 
 function codeOf(error: unknown): string {
@@ -23,13 +25,15 @@ export function loggable(error: unknown): Record<string, unknown> {
 /** An expected problem, or that the database is away; anything else is a fault of ours. */
 export function asProblem(error: unknown): Problem | null {
 	if (error instanceof Problem) return error;
-	if (!AWAY.test(codeOf(error))) return null;
+	const code = codeOf(error);
+	const isBusy = BUSY.test(code);
+	if (!isBusy && !AWAY.test(code)) return null;
 	return new Problem(
 		'unavailable',
-		'The database is away or full. Your work is kept; try again in a moment.',
-		{
-			retryAfterSeconds: RETRY_AFTER_SECONDS
-		}
+		isBusy
+			? 'The database is busy. Try again in a moment.'
+			: 'The database is away or full. Try again in a moment.',
+		{ retryAfterSeconds: RETRY_AFTER_SECONDS }
 	);
 }
 

@@ -4,8 +4,9 @@ import type { Database, Handle } from '../db/client.ts';
 import { jobs } from '../db/schema/index.ts';
 import { publish } from '../events/publish.ts';
 import { log } from '../log.ts';
-import { CANCELLED, JobRefused, type JobKind } from './job-kind.ts';
-import type { JobRow } from './job-rows.ts';
+import { addToQueue } from './enqueue.ts';
+import { CANCELLED, JobRefused, STOPPING, type JobKind } from './job-kind.ts';
+import { UNFINISHED, type JobRow } from './job-rows.ts';
 
 /** Progress is written and told at most this often. */
 const PROGRESS_INTERVAL_MS = 250;
@@ -34,7 +35,7 @@ async function beginAttempt(db: Database, jobId: string): Promise<JobRow | null>
 				attempt: sql`${jobs.attempt} + 1`,
 				startedAt: new Date()
 			})
-			.where(and(eq(jobs.id, jobId), inArray(jobs.state, ['queued', 'running'])))
+			.where(and(eq(jobs.id, jobId), inArray(jobs.state, UNFINISHED)))
 			.returning();
 		if (row) await tell(tx, row);
 		return row ?? null;
@@ -130,7 +131,14 @@ export async function runJob(
 			return;
 		}
 		if (signal.reason === CANCELLED) return;
-		if (isLastAttempt && !signal.aborted) {
+		if (signal.reason === STOPPING) {
+			// Not the job's fault: it goes back with all its attempts, and its turn comes first.
+			await db.transaction(async (tx) => {
+				if (await endAttempt(tx, job, 'queued')) await addToQueue(tx, job.id, 0);
+			});
+			return;
+		}
+		if (isLastAttempt) {
 			log.error({ error, job: job.id }, 'job given up');
 			await endAttempt(db, job, 'failed', {
 				message: `The work failed ${job.attempt} times for reasons outside the plan and was given up. Start it again, or tell an administrator.`,

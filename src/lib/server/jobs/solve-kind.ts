@@ -1,9 +1,9 @@
-import { eq } from 'drizzle-orm';
+import { and, eq } from 'drizzle-orm';
 import { z } from 'zod';
 import { SOLVER_VERSION } from '#lib/solver/index.ts';
 import type { ResultFile } from '#lib/results/index.ts';
 import type { Handle } from '../db/client.ts';
-import { floorplans, resultMaps, results, type ResultFigures } from '../db/schema/index.ts';
+import { documents, resultMaps, results, type ResultFigures } from '../db/schema/index.ts';
 import { publish } from '../events/publish.ts';
 import { JobRefused, type JobKind } from './job-kind.ts';
 import type { SolveAnswer } from './solve-messages.ts';
@@ -21,8 +21,8 @@ export const solveInputSchema = z.object({
 export type SolveInput = z.infer<typeof solveInputSchema>;
 
 /** Two requests of the same solve are one piece of work. */
-export function solveDedupeKey({ projectId, documentHash, mode, corner }: SolveInput): string {
-	return [SOLVE_KIND, projectId, documentHash, mode, corner, SOLVER_VERSION].join(':');
+export function solveDedupeKey({ floorplanId, documentHash, mode, corner }: SolveInput): string {
+	return [SOLVE_KIND, floorplanId, documentHash, mode, corner, SOLVER_VERSION].join(':');
 }
 
 /** What overviews show of a result. */
@@ -40,23 +40,23 @@ export function figuresOf(file: ResultFile): ResultFigures {
 	};
 }
 
-/** Solves the floorplan as it stands in one mode and corner, and keeps the result. */
+/** Solves the document that was asked for in one mode and corner, and keeps the result. */
 export function solveKind(runner: SolveRunner): JobKind<SolveInput, SolveAnswer> {
 	return {
 		kind: SOLVE_KIND,
 		input: solveInputSchema,
 		async run(input, { db, signal, progress }) {
+			const { projectId, documentHash, mode, corner } = input;
 			const [row] = await db
-				.select({ hash: floorplans.hash, document: floorplans.document })
-				.from(floorplans)
-				.where(eq(floorplans.id, input.floorplanId));
-			if (!row || row.hash !== input.documentHash) {
+				.select({ document: documents.document })
+				.from(documents)
+				.where(and(eq(documents.projectId, projectId), eq(documents.hash, documentHash)));
+			if (!row) {
 				throw new JobRefused({
-					message: 'The floorplan was edited before its turn came. Solve again.',
+					message: 'The document to solve is no longer kept. Solve again.',
 					problems: []
 				});
 			}
-			const { documentHash, mode, corner } = input;
 			return runner.run({ floorplan: row.document, documentHash, mode, corner }, signal, progress);
 		},
 		store: storeResult
@@ -82,10 +82,32 @@ async function storeResult(
 		})
 		.onConflictDoNothing()
 		.returning({ id: results.id });
-	// Kept already: the same document gives the same numbers.
-	if (!created) return;
-	await db
-		.insert(resultMaps)
-		.values(maps.map(({ net, gzip }) => ({ resultId: created.id, net, gzip })));
-	await publish(db, { type: 'result', floorplanId, id: created.id, mode, corner, documentHash });
+	if (created) {
+		await db
+			.insert(resultMaps)
+			.values(maps.map(({ net, gzip }) => ({ resultId: created.id, net, gzip })));
+	}
+	// Kept already by another floorplan of the same content: the numbers are the same.
+	const id = created?.id ?? (await findResult(db, input))?.id;
+	if (id) await publish(db, { type: 'result', floorplanId, id, mode, corner, documentHash });
+}
+
+/** The kept result of a document in a mode and corner. */
+async function findResult(
+	db: Handle,
+	{ projectId, documentHash, mode, corner }: SolveInput
+): Promise<{ id: string } | undefined> {
+	const [row] = await db
+		.select({ id: results.id })
+		.from(results)
+		.where(
+			and(
+				eq(results.projectId, projectId),
+				eq(results.documentHash, documentHash),
+				eq(results.mode, mode),
+				eq(results.corner, corner),
+				eq(results.solverVersion, SOLVER_VERSION)
+			)
+		);
+	return row;
 }

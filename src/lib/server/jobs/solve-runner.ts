@@ -4,6 +4,10 @@ import { config } from '../config.ts';
 import { JobRefused } from './job-kind.ts';
 import type { SolveAnswer, SolveReply, SolveRequest } from './solve-messages.ts';
 
+const BYTES_PER_MB = 1024 * 1024;
+/** How often the memory of the process is looked at. */
+const WATCH_INTERVAL_MS = 250;
+
 /**
  * Runs solves in a thread that is kept between them, so that modes of one plan share its mesh and
  * factors. A solve that is no longer wanted, or that dies, takes the thread with it; the next one
@@ -25,6 +29,8 @@ export class SolveRunner {
 				thread.removeAllListeners('error');
 				thread.removeAllListeners('exit');
 				signal.removeEventListener('abort', abort);
+				clearInterval(watch);
+				clearTimeout(timeout);
 			};
 			const fail = (reason: Error) => {
 				end();
@@ -33,6 +39,13 @@ export class SolveRunner {
 			};
 			const abort = () => fail(new Error(`solve ended: ${String(signal.reason)}`));
 			signal.addEventListener('abort', abort);
+			// The thread's own limit counts objects, not the arrays that hold most of a solve.
+			const watch = setInterval(() => {
+				if (process.memoryUsage.rss() > config().MANYWEIR_SOLVE_MEMORY_MB * BYTES_PER_MB) {
+					fail(tooMuchMemory());
+				}
+			}, WATCH_INTERVAL_MS);
+			const timeout = setTimeout(() => fail(tooMuchTime()), config().MANYWEIR_SOLVE_SECONDS * 1000);
 			thread.on('message', (reply: SolveReply) => {
 				if (reply.type === 'progress') return onProgress(reply.phase, reply.fraction);
 				end();
@@ -67,9 +80,19 @@ export class SolveRunner {
 function explain(error: NodeJS.ErrnoException): Error {
 	const isOutOfMemory =
 		error.code === 'ERR_WORKER_OUT_OF_MEMORY' || /array buffer allocation/i.test(error.message);
-	if (!isOutOfMemory) return error;
+	return isOutOfMemory ? tooMuchMemory() : error;
+}
+
+function tooMuchMemory(): JobRefused {
 	return new JobRefused({
 		message: `The plan needs more than the ${config().MANYWEIR_SOLVE_MEMORY_MB} MB that one solve may use. Use wider pitches, or ask an administrator for more memory.`,
+		problems: []
+	});
+}
+
+function tooMuchTime(): JobRefused {
+	return new JobRefused({
+		message: `The solve took longer than the ${config().MANYWEIR_SOLVE_SECONDS} s that one may take. Use wider pitches, or ask an administrator for more time.`,
 		problems: []
 	});
 }

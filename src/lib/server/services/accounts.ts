@@ -3,10 +3,11 @@ import type { z } from 'zod';
 import type { changePasswordSchema, signInSchema, signUpSchema } from '#lib/contracts/index.ts';
 import { audit, type Actor } from '../audit.ts';
 import { checkPassword, hashPassword, passwordProblem } from '../auth/password.ts';
-import { countTry, forgetTries } from '../auth/rate-limit.ts';
+import { countSignIn, countTry, forgetTries, noteSignIn } from '../auth/rate-limit.ts';
 import { beginSession, endAllSessions } from '../auth/session.ts';
 import type { Database } from '../db/client.ts';
 import { teams, users } from '../db/schema/index.ts';
+import { log } from '../log.ts';
 import { sendMail } from '../mail/mail.ts';
 import { Problem } from '../problem.ts';
 
@@ -39,10 +40,6 @@ export async function signUp(
 	const problem = passwordProblem(input.password, [input.email, input.name, input.team]);
 	if (problem) refusePassword('password', problem);
 	const passwordHash = await hashPassword(input.password);
-	if (await findUser(db, input.email)) {
-		const message = 'This address cannot be used. If it is yours, sign in instead.';
-		throw new Problem('invalid', message, { errors: [{ path: 'email', message }] });
-	}
 	const userId = await db.transaction(async (tx) => {
 		const [team] = await tx.insert(teams).values({ name: input.team }).returning();
 		const [user] = await tx
@@ -54,7 +51,12 @@ export async function signUp(
 				passwordHash,
 				isTeamAdmin: true
 			})
+			.onConflictDoNothing()
 			.returning();
+		if (!user) {
+			const message = 'This address cannot be used. If it is yours, sign in instead.';
+			throw new Problem('invalid', message, { errors: [{ path: 'email', message }] });
+		}
 		await audit(tx, {
 			teamId: team.id,
 			userId: user.id,
@@ -74,8 +76,7 @@ export async function signIn(
 	{ email, password }: Pick<z.output<typeof signInSchema>, 'email' | 'password'>,
 	caller: Caller
 ): Promise<string> {
-	await countTry(db, 'sign-in-address', caller.address);
-	await countTry(db, 'sign-in-account', email);
+	await countSignIn(db, email, caller.address);
 	const user = await findUser(db, email);
 	const isRight = await checkPassword(user?.passwordHash, password);
 	await audit(db, {
@@ -88,7 +89,7 @@ export async function signIn(
 		outcome: isRight ? 'done' : 'refused'
 	});
 	if (!user || !isRight) throw new Problem('not-signed-in', 'Address or password is not right.');
-	await forgetTries(db, 'sign-in-account', email);
+	await noteSignIn(db, email, caller.address);
 	return beginSession(db, user.id, caller.userAgent);
 }
 
@@ -100,7 +101,7 @@ export async function changePassword(
 	{ current, password }: z.output<typeof changePasswordSchema>
 ): Promise<void> {
 	const [user] = await db.select().from(users).where(eq(users.id, actor.userId));
-	await countTry(db, 'sign-in-account', user.email);
+	await countTry(db, 'confirm-password', user.id);
 	if (!(await checkPassword(user.passwordHash, current))) {
 		refusePassword('current', 'This is not your present password');
 	}
@@ -119,10 +120,11 @@ export async function changePassword(
 			objectId: user.id
 		});
 	});
-	await forgetTries(db, 'sign-in-account', user.email);
+	await forgetTries(db, 'confirm-password', user.id);
+	// The password is changed, whether or not mail works at the moment.
 	await sendMail({
 		to: user.email,
 		subject: 'Your Manyweir password was changed',
 		text: 'Your password was changed and all other browsers were signed out. If this was not you, ask the admin of your team at once.'
-	});
+	}).catch((error: unknown) => log.error({ error }, 'mail about a changed password not sent'));
 }

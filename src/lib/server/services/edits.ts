@@ -52,10 +52,17 @@ export async function submitEdit(
 	return db.transaction(async (tx) => {
 		const [row] = await tx.select().from(floorplans).where(eq(floorplans.id, id)).for('update');
 		const [known] = await tx
-			.select({ toVersion: floorplanEdits.toVersion })
+			.select({
+				version: floorplanEdits.toVersion,
+				hash: floorplanEdits.toHash,
+				userId: floorplanEdits.userId
+			})
 			.from(floorplanEdits)
 			.where(and(eq(floorplanEdits.floorplanId, id), eq(floorplanEdits.editId, edit.id)));
-		if (known) return { version: known.toVersion, hash: row.hash };
+		if (known?.userId === actor.userId) return { version: known.version, hash: known.hash };
+		if (known) {
+			throw new Problem('invalid', 'id: another edit has this id (expected a new random UUID).');
+		}
 		if (edit.baseVersion > row.version) {
 			throw new Problem(
 				'invalid',
@@ -94,6 +101,7 @@ export async function submitEdit(
 			operations: edit.operations,
 			baseVersion: edit.baseVersion,
 			toVersion: version,
+			toHash: hash,
 			userId: actor.userId
 		});
 		await publish(tx, { type: 'edit', floorplanId: id, version, by: actor.name, editId: edit.id });

@@ -6,14 +6,14 @@ import { SOLVER_VERSION } from '#lib/solver/index.ts';
 import { requireAccess } from '../access/access.ts';
 import { audit, type Actor } from '../audit.ts';
 import type { Database, Handle } from '../db/client.ts';
-import { floorplans, resultMaps, results } from '../db/schema/index.ts';
-import { cancelJob } from '../jobs/cancel.ts';
+import { documents, floorplans, resultMaps, results } from '../db/schema/index.ts';
+import { cancelJob, cancelSuperseded } from '../jobs/cancel.ts';
 import { enqueue } from '../jobs/enqueue.ts';
 import { findJob, listJobs } from '../jobs/job-rows.ts';
 import { SOLVE_KIND, solveDedupeKey } from '../jobs/solve-kind.ts';
 import { Problem } from '../problem.ts';
 
-/** Solves that one team may have waiting. */
+/** Modes and corners that one request may ask for. */
 const MAX_COMBINATIONS = 64;
 
 /**
@@ -88,9 +88,15 @@ export async function requestSolves(
 					inArray(results.mode, modes)
 				)
 			);
-		for (const { mode, corner } of combinations) {
-			if (kept.some((one) => one.mode === mode && one.corner === corner)) continue;
+		const missing = combinations.filter(
+			({ mode, corner }) => !kept.some((one) => one.mode === mode && one.corner === corner)
+		);
+		if (missing.length > 0) {
+			await tx.insert(documents).values({ projectId, hash, document }).onConflictDoNothing();
+		}
+		for (const { mode, corner } of missing) {
 			const input = { projectId, floorplanId: id, documentHash: hash, mode, corner };
+			await cancelSuperseded(tx, input);
 			const job = await enqueue(tx, {
 				kind: SOLVE_KIND,
 				input,

@@ -1,4 +1,7 @@
-import { redirect } from '@sveltejs/kit';
+import { fail, redirect } from '@sveltejs/kit';
+import { superValidate } from 'sveltekit-superforms';
+import { zod4 } from 'sveltekit-superforms/adapters';
+import { addDemoSchema } from '#lib/contracts/index.ts';
 import { database } from '#lib/server/db/client.ts';
 import { loading, requireActor } from '#lib/server/guard.ts';
 import { addDemoFloorplan } from '#lib/server/services/demo.ts';
@@ -19,10 +22,10 @@ export const load: PageServerLoad = async (event) => {
 export const actions: Actions = {
 	demo: async (event) => {
 		const actor = requireActor(event);
-		const name = (await event.request.formData()).get('name');
-		const title = typeof name === 'string' ? name.trim().slice(0, 120) : '';
+		const form = await superValidate(event, zod4(addDemoSchema));
+		if (!form.valid) return fail(400, { form });
 		const { id } = await loading(() =>
-			addDemoFloorplan(database(), actor, event.params.projectId, title)
+			addDemoFloorplan(database(), actor, event.params.projectId, form.data.name)
 		);
 		redirect(303, `/floorplans/${id}`);
 	}
