@@ -1,3 +1,4 @@
+import { jsonEquals } from '../canonical.ts';
 import { onGridUm, type OutlineUm } from '../primitives.ts';
 import type { Floorplan, ItemList, ItemOf } from '../document.ts';
 import type { Edit, Item, Operation, Property } from './operation.ts';
@@ -135,12 +136,25 @@ export function changeField<L extends ItemList>(
 	field: string,
 	to: unknown
 ): EditDraft {
+	return changeEach(floorplan, list, ids, field, () => to);
+}
+
+/** Sets one field of several items of a list, of each to a value made from the item as it is. */
+export function changeEach<L extends ItemList>(
+	floorplan: Floorplan,
+	list: L,
+	ids: readonly string[],
+	field: string,
+	valueFor: (item: ItemOf<L>) => unknown
+): EditDraft {
 	return {
 		label: `Change ${field} of ${describeItems(ids.map((id) => ({ list, id })))}`,
 		operations: ids.flatMap((id) => {
 			const item = findItem(floorplan, list, id);
-			const from: unknown = item && Reflect.get(item, field);
-			return item && from !== to ? [change(list, id, field, from, to)] : [];
+			if (!item) return [];
+			const from: unknown = Reflect.get(item, field);
+			const to = valueFor(item);
+			return jsonEquals(from, to) ? [] : [change(list, id, field, from, to)];
 		})
 	};
 }

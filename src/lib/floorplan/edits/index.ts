@@ -5,6 +5,7 @@ export { applyOperations } from './apply.ts';
 export type { EditDraft, ItemReference, PlacedList } from './actions.ts';
 export {
 	addItems,
+	changeEach,
 	changeField,
 	describeItems,
 	duplicateItems,
@@ -18,3 +19,5 @@ export {
 } from './actions.ts';
 export type { Referrer } from './references.ts';
 export { referrersOf } from './references.ts';
+export type { OutlineFrame } from './outline-frame.ts';
+export { frameOf, withFrame } from './outline-frame.ts';
