@@ -4,7 +4,7 @@
  */
 import { createServer, type IncomingMessage, type ServerResponse } from 'node:http';
 import type { AddressInfo } from 'node:net';
-import type { Cookies, RequestEvent, RequestHandler } from '@sveltejs/kit';
+import { isRedirect, type Cookies, type RequestEvent, type RequestHandler } from '@sveltejs/kit';
 import { getRequest, setResponse } from '@sveltejs/kit/node';
 import { closeDatabase } from '#lib/server/db/client.ts';
 import { HOOKS } from '#lib/server/hooks/index.ts';
@@ -85,7 +85,15 @@ async function answer(request: Request): Promise<Response> {
 				headers: { allow: route.methods.join(', ') }
 			});
 		}
-		const response = await handler(event);
+		const response = await Promise.resolve(event)
+			.then(handler)
+			.catch((thrown: unknown) => {
+				if (!isRedirect(thrown)) throw thrown;
+				return new Response(null, {
+					status: thrown.status,
+					headers: { location: thrown.location }
+				});
+			});
 		return new Response(response.body, {
 			status: response.status,
 			headers: new Headers(response.headers)
