@@ -33,7 +33,8 @@ export function drawing(page: Page) {
 
 /** A row of the ledger by the id in its first cell. */
 export function ledgerRow(page: Page, id: string) {
-	return page.getByRole('region', { name: 'Ledger' }).locator(`tr[data-key="${id}"]`);
+	const name = new RegExp(`^${id.replaceAll('.', '\\.')} `);
+	return page.getByRole('region', { name: 'Ledger' }).getByRole('row', { name });
 }
 
 /** Chooses a mode or corner by its name. */
