@@ -27,7 +27,14 @@ export async function enqueue(db: Handle, job: NewJob): Promise<JobRow> {
 		.select({ unfinished: count() })
 		.from(jobs)
 		.where(and(eq(jobs.requestedBy, job.requestedBy), inArray(jobs.state, UNFINISHED)));
-	const [created] = await db.insert(jobs).values(job).onConflictDoNothing().returning();
+	const [created] = await db
+		.insert(jobs)
+		.values(job)
+		.onConflictDoNothing({
+			target: jobs.dedupeKey,
+			where: sql`${jobs.state} in ('queued', 'running')`
+		})
+		.returning();
 	if (!created) {
 		const [same] = await db
 			.select()
