@@ -1,8 +1,9 @@
-/** Writes the network of a plan as a SPICE-syntax deck. */
+/** Writes the network of a plan, in one mode and corner, as a SPICE-syntax deck. */
 import { writeFile } from 'node:fs/promises';
 import { parseArgs } from 'node:util';
 import { meshFloorplan } from '#lib/mesh/index.ts';
 import { writeDeck } from '#lib/netlist/index.ts';
+import { solveOperatingPoint } from '#lib/solver/index.ts';
 import {
 	EXIT_SOLVED,
 	failWith,
@@ -45,7 +46,15 @@ async function netlist(): Promise<number> {
 	if (conditions.status === 'refused') return failWith(conditions.lines);
 	const meshed = meshFloorplan(floorplan);
 	if (meshed.status === 'refused') return failWith(problemLines(meshed.problems));
-	const written = writeDeck(floorplan, meshed.network, conditions);
+	const { mode, corner } = conditions;
+	// The deck starts a simulator at the answer where there is one; it states the network either way.
+	const outcome = solveOperatingPoint(floorplan, meshed.network, {
+		mode: mode.id,
+		corner: corner.id,
+		now: () => 0
+	});
+	const start = outcome.status === 'solved' ? outcome.point : null;
+	const written = writeDeck(floorplan, meshed.network, { mode, corner, start });
 	if (written.status === 'refused') return failWith(problemLines(written.problems));
 	if (values.out === undefined) {
 		process.stdout.write(written.deck);

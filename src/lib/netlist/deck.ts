@@ -2,11 +2,20 @@ import type { Corner, Floorplan, Mode } from '#lib/floorplan/index.ts';
 import { resistancesAt, type ModelProblem, type Network } from '#lib/mesh/index.ts';
 import { loadLines } from './loads.ts';
 import { nodeNames, safeIds } from './names.ts';
-import { regulatorLines, senseLines } from './regulators.ts';
+import { regulatorLines } from './regulators.ts';
+import { senseLines } from './sense.ts';
+import type { DeckStart } from './start.ts';
 
 export type DeckResult =
 	| { readonly status: 'written'; readonly deck: string }
 	| { readonly status: 'refused'; readonly problems: readonly ModelProblem[] };
+
+/**
+ * Tolerances of the simulator's own iteration. All laws but a few loads' are straight in pieces, so
+ * that two steps which agree this well stand on the same pieces and the answer is as exact as the
+ * linear solve; tighter ones meet the rounding noise of the steep walls and never end.
+ */
+const OPTIONS = '.options reltol=1e-6 abstol=1e-8 vntol=1e-7 gmin=1e-15 itl1=500 numdgt=15';
 
 /** Volts of a feed's ideal source in a mode. */
 function feedVolts(floorplan: Floorplan, netId: string, mode: Mode): number {
@@ -86,12 +95,16 @@ function headLines(floorplan: Floorplan, mode: Mode, corner: Corner): string[] {
 export function writeDeck(
 	floorplan: Floorplan,
 	network: Network,
-	{ mode, corner }: { readonly mode: Mode; readonly corner: Corner }
+	{
+		mode,
+		corner,
+		start = null
+	}: { readonly mode: Mode; readonly corner: Corner; readonly start?: DeckStart | null }
 ): DeckResult {
 	const scaled = resistancesAt(network, floorplan, corner);
 	if (scaled.status === 'refused') return scaled;
 	const { names, comments } = nodeNames(floorplan, network);
-	const loops = senseLines(floorplan, network, names);
+	const loops = senseLines(floorplan, network, names, start);
 	const sections = [
 		headLines(floorplan, mode, corner),
 		comments,
@@ -100,11 +113,11 @@ export function writeDeck(
 		['* Feeds'],
 		feedLines(floorplan, network, mode, names),
 		['* Regulators'],
-		regulatorLines(floorplan, network, corner, names, loops.correctionNode),
+		regulatorLines(floorplan, network, corner, names, loops.correctionNode, start),
 		loops.lines,
 		['* Loads'],
-		loadLines(floorplan, network, mode, corner, names),
-		['.options reltol=1e-9 abstol=1e-12 vntol=1e-10 gmin=1e-15 itl1=500 numdgt=15', '.op', '.end']
+		loadLines(floorplan, network, mode, corner, names, start),
+		[OPTIONS, '.op', '.end']
 	];
 	const deck = sections.map((lines) => lines.map((line) => `${line}\n`).join('')).join('');
 	return { status: 'written', deck };

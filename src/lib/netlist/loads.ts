@@ -1,6 +1,7 @@
 import type { Corner, Floorplan, Mode } from '#lib/floorplan/index.ts';
 import type { Network } from '#lib/mesh/index.ts';
-import { voltageOf } from './regulators.ts';
+import { nameOf, startingFrom, voltageOf } from './expressions.ts';
+import type { DeckStart } from './start.ts';
 
 /** Below this fraction of nominal a load's law is continued linearly to zero (model section 4.3). */
 const COLLAPSE_FRACTION = 0.1;
@@ -13,25 +14,26 @@ const COLLAPSE_FRACTION = 0.1;
  */
 export const MAX_NODES_WITH_COLLAPSE = 5000;
 
-/**
- * The current over its nominal as an expression of x = v / volts (model section 4.3). A simulator
- * starts from 0 V, where it would take the collapsed part for the law: it could find the collapsed
- * answer of a load that draws more as its voltage falls, and orders its equations for a network
- * that the loads tie to ground. For x = 0 exactly a load is therefore given its nominal current.
- */
+/** The current over its nominal as an expression of x = v / volts (model section 4.3). */
 function lawOf(x: string, exponent: number): string {
 	const slope = Math.pow(COLLAPSE_FRACTION, exponent - 1);
 	const power = exponent === 0 ? '1' : `pow(${x},${exponent})`;
-	return `(${x}==0?1:(${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power}))`;
+	return `${x}<${COLLAPSE_FRACTION}?${slope}*${x}:${power}`;
 }
 
-/** Every attachment of a block's current as a source to its local ground. */
+/**
+ * Every attachment of a block's current as a source to its local ground. A simulator starts from
+ * 0 V, where it would take the collapsed part for the law: it could find the collapsed answer of a
+ * load that draws more as its voltage falls, and would order its equations for a network that the
+ * loads tie to ground. A load therefore starts with its nominal current, or that of `start`.
+ */
 export function loadLines(
 	floorplan: Floorplan,
 	network: Network,
 	mode: Mode,
 	corner: Corner,
-	names: readonly string[]
+	names: readonly string[],
+	start: DeckStart | null
 ): string[] {
 	const { loads, nets, nodes } = network;
 	const hasCollapse = nodes.count <= MAX_NODES_WITH_COLLAPSE;
@@ -50,7 +52,7 @@ export function loadLines(
 		}
 		const node = loads.node[load];
 		const { volts } = nets[nodes.net[node]];
-		const ground = loads.groundNode[load] < 0 ? '0' : names[loads.groundNode[load]];
+		const ground = nameOf(names, loads.groundNode[load]);
 		const pair = `${names[node]} ${ground}`;
 		if (exponent === 1) {
 			lines.push(`gl${load} ${pair} ${pair} ${amps / volts}`);
@@ -58,7 +60,8 @@ export function loadLines(
 			lines.push(`il${load} ${pair} ${amps}`);
 		} else {
 			const x = `${voltageOf(names[node], ground)}/(${volts})`;
-			lines.push(`bl${load} ${pair} i=(${amps})*${lawOf(x, exponent)}`);
+			const first = start === null ? '1' : String(start.loadAmps[load] / amps);
+			lines.push(`bl${load} ${pair} i=(${amps})*${startingFrom(x, first, lawOf(x, exponent))}`);
 		}
 	}
 	return lines;

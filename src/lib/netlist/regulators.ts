@@ -1,36 +1,55 @@
-import type { Corner, Floorplan } from '#lib/floorplan/index.ts';
-import { senseProbes, type Network } from '#lib/mesh/index.ts';
+import type { Cell, Corner, Floorplan } from '#lib/floorplan/index.ts';
+import type { Network } from '#lib/mesh/index.ts';
+import { beyond, nameOf, startingFrom, WALL } from './expressions.ts';
 import { safeIds } from './names.ts';
+import type { DeckStart } from './start.ts';
 
-/**
- * Slope of the characteristics beyond a bound, ohm. It stands for a vertical line: a unit that is
- * held 10 mV away from its law passes its bound by 1 nA.
- */
-export const WALL_OHM = 1e7;
-
-/**
- * Leak of the node that stands for a slow loop's correction, ohm. Where every unit of the net stands
- * at a bound the correction moves nothing, and without a leak the equations would be singular. Less
- * of it would cost digits where a simulator has ordered its equations in such a state; this much
- * moves the mean by 1e-7 of the correction.
- */
-const CORRECTION_LEAK_OHM = 1e7;
-
-/** The voltage of a node against a reference; ideal and quiet ground are node 0. */
-export function voltageOf(node: string, reference: string): string {
-	return reference === '0' ? `v(${node})` : `v(${node},${reference})`;
+/** The straight pieces of a unit's characteristic, each an expression of v_in - v over its current. */
+interface Pieces {
+	/** v_in - (s - Ro i). */
+	readonly regulating: string;
+	/** Ron i. */
+	readonly fullyOn: string;
+	/** Ron i with a wall below 0: the pass device never takes current back. */
+	readonly blocked: string;
+	/** Walls beyond maxA and below -sinkA. */
+	readonly limited: string;
+	readonly idle: string;
 }
 
-function nameOf(names: readonly string[], node: number): string {
-	return node < 0 ? '0' : names[node];
+function piecesOf(cell: Cell, current: string, regulating: string): Pieces {
+	return {
+		regulating,
+		fullyOn: `${cell.onOhm}*${current}`,
+		blocked: `${cell.onOhm}*${current}+${WALL}*${current}`,
+		limited: `+${WALL}*(${current}-${cell.maxA})`,
+		idle: `-${WALL}*(-${cell.sinkA}-${current})`
+	};
 }
 
-/**
- * The steep wall beyond a bound: 0 within it and on the bound itself. The tie matters, since a
- * simulator starts on it, with no current, and orders its equations by the slopes that it finds.
- */
-function beyond(excess: string): string {
-	return `${WALL_OHM}*((${excess})>0?(${excess}):0)`;
+/** The pieces on which a unit stands at a known operating point. */
+function startOf(
+	pieces: Pieces,
+	cell: Cell,
+	ohm: number,
+	at: {
+		readonly state: DeckStart['regulatorStates'][number];
+		readonly amps: number;
+		/** Set point and output against 0 V, and the input, or null where it is ideal. */
+		readonly setV: number;
+		readonly outV: number;
+		readonly inV: number | null;
+	}
+): string {
+	const { state, amps, setV, outV, inV } = at;
+	const isStarved = inV !== null && amps <= 0 && inV <= outV && setV > outV;
+	const isFullyOn =
+		inV !== null && !isStarved && amps > 0 && cell.onOhm * amps > inV - (setV - ohm * amps);
+	const within = isStarved ? pieces.blocked : isFullyOn ? pieces.fullyOn : pieces.regulating;
+	if (state === 'limited') return within + pieces.limited;
+	// A unit that may not sink and gets nothing stands on its lower bound too.
+	if (state === 'idle' || (isStarved && cell.sinkA === 0)) return within + pieces.idle;
+	return within;
 }
 
 /**
@@ -49,68 +68,59 @@ export function regulatorLines(
 	network: Network,
 	corner: Corner,
 	names: readonly string[],
-	correctionNode: ReadonlyMap<string, string>
+	correctionNode: ReadonlyMap<string, string>,
+	start: DeckStart | null
 ): string[] {
 	const ids = safeIds(floorplan.regulators);
 	const cells = new Map(floorplan.cells.map((cell) => [cell.id, cell]));
 	const nets = new Map(floorplan.nets.map((net) => [net.id, net]));
+	const taps = network.regulators;
 	return floorplan.regulators.flatMap((unit, r) => {
 		const cell = cells.get(unit.cell);
 		const net = nets.get(unit.output);
-		const outputNode = network.regulators.outputNode[r];
-		if (!unit.enabled || cell === undefined || net === undefined || outputNode < 0) {
+		if (!unit.enabled || cell === undefined || net === undefined || taps.outputNode[r] < 0) {
 			return [`* regulator ${unit.id}: off`];
 		}
-		const output = nameOf(names, outputNode);
-		const input = nameOf(names, network.regulators.inputNode[r]);
-		const ground = nameOf(names, network.regulators.groundNode[r]);
-		const reference = net.groundReference === 'quiet' ? '0' : ground;
+		const output = nameOf(names, taps.outputNode[r]);
+		const input = nameOf(names, taps.inputNode[r]);
+		const ground = nameOf(names, taps.groundNode[r]);
+		const referenceNode = net.groundReference === 'quiet' ? -1 : taps.groundNode[r];
 		const correction = correctionNode.get(net.id);
 		const ohm = cell.outputOhm * corner.outputOhmScale;
 		const current = `i(vr_${ids[r]})`;
+		const setV = net.volts + unit.offsetV;
 
-		const referred = reference === '0' ? '' : `+v(${reference})`;
-		const level = `(${net.volts + unit.offsetV})${correction === undefined ? '' : `+v(${correction})`}${referred}`;
-		const below = unit.input === null ? '' : `v(${input})`;
-		const regulating = `${below}-(${level}-${ohm}*${current})`;
-		const fullyOn = `${cell.onOhm}*${current}-${beyond(`-${current}`)}`;
-		const within = unit.input === null ? regulating : `max(${regulating},${fullyOn})`;
+		const level = [
+			`(${setV})`,
+			...(correction === undefined ? [] : [`v(${correction})`]),
+			...(referenceNode < 0 ? [] : [`v(${names[referenceNode]})`])
+		].join('+');
+		const inputVolts = unit.input === null ? '' : `v(${input})`;
+		const pieces = piecesOf(cell, current, `${inputVolts}-(${level}-${ohm}*${current})`);
+		const within =
+			unit.input === null
+				? pieces.regulating
+				: `max(${pieces.regulating},${pieces.fullyOn}-${beyond(`-${current}`)})`;
 		const bounds = `+${beyond(`${current}-${cell.maxA}`)}-${beyond(`-${cell.sinkA}-${current}`)}`;
+		const at = (node: number) => (start === null || node < 0 ? 0 : start.voltage[node]);
+		const correctionV =
+			start?.sense.find((loop) => network.nets[loop.net].id === net.id)?.correctionV ?? 0;
+		const startPiece =
+			start === null
+				? null
+				: startOf(pieces, cell, ohm, {
+						state: start.regulatorStates[r],
+						amps: start.regulatorAmps[r],
+						setV: setV + correctionV + at(referenceNode),
+						outV: at(taps.outputNode[r]),
+						inV: unit.input === null ? null : at(taps.inputNode[r])
+					});
 		const lines = [
 			`* regulator ${unit.id}, cell ${unit.cell}`,
 			`vr_${ids[r]} ${input} r_${ids[r]} 0`,
-			`br_${ids[r]} r_${ids[r]} ${output} v=${within}${bounds}`
+			`br_${ids[r]} r_${ids[r]} ${output} v=${startingFrom(current, startPiece, within + bounds)}`
 		];
 		if (cell.quiescentA > 0) lines.push(`iq_${ids[r]} ${input} ${ground} ${cell.quiescentA}`);
 		return lines;
 	});
-}
-
-/**
- * The shared slow loops of model section 4.4, one unknown u each: the node u_<net>, whose equation
- * is that the weighted mean at the sense points equals the net's volts, with walls at +-rangeV.
- */
-export function senseLines(
-	floorplan: Floorplan,
-	network: Network,
-	names: readonly string[]
-): { lines: string[]; correctionNode: Map<string, string> } {
-	const ids = safeIds(floorplan.nets);
-	const correctionNode = new Map<string, string>();
-	const lines = senseProbes(floorplan, network).flatMap(({ net, node, weight, rangeV }) => {
-		const { id, volts } = network.nets[net];
-		const isQuiet = floorplan.nets[net].groundReference === 'quiet';
-		const u = `u_${ids[net]}`;
-		correctionNode.set(id, u);
-		const mean = Array.from(node, (sensed, p) => {
-			const ground = isQuiet ? '0' : nameOf(names, network.nodes.localGround[sensed]);
-			return `${weight[p]}*${voltageOf(names[sensed], ground)}`;
-		}).join('+');
-		return [
-			`* shared slow loop of net ${id}: v(${u}) is added to every set point`,
-			`ru_${ids[net]} ${u} 0 ${CORRECTION_LEAK_OHM}`,
-			`bu_${ids[net]} 0 ${u} i=(${volts})-(${mean})-${beyond(`v(${u})-${rangeV}`)}+${beyond(`-${rangeV}-v(${u})`)}`
-		];
-	});
-	return { lines, correctionNode };
 }
