@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { fit, panBy, toDie, toScreen, viewOf, zoomAt, type Camera } from './camera.ts';
+import { beside, fit, panBy, toDie, toScreen, viewOf, zoomAt, type Camera } from './camera.ts';
 import { diePoint, screenPoint } from './points.ts';
 
 const camera: Camera = {
@@ -71,6 +71,19 @@ describe('camera', () => {
 		expect(view.maxX).toBeGreaterThan(bounds.maxX);
 		expect(view.maxY).toBeGreaterThan(bounds.maxY);
 		expect([fitted.centreXUm, fitted.centreYUm]).toEqual([250, 425]);
+	});
+
+	it.each([
+		['room enough: beside what covers it', 900, 300, 324],
+		['a narrow one: to its right edge, no further', 620, 300, 96],
+		['nothing covered: in the middle', 1280, 0, 390]
+	])('%s', (_name, widthPx, coveredPx, leftPx) => {
+		const bounds = { minX: 0, minY: 0, maxX: 1000, maxY: 1000 };
+		// 548 px high with margins: half a pixel to the micrometre.
+		const narrow = fit({ ...camera, widthPx, heightPx: 548 }, bounds);
+		const moved = beside(narrow, bounds, coveredPx);
+		expect(moved.pxPerUm).toBe(narrow.pxPerUm);
+		expect(toScreen(moved, diePoint(0, 0))[0]).toBeCloseTo(leftPx);
 	});
 
 	it('fitting a point, or in a canvas without size, gives a finite scale', () => {

@@ -66,6 +66,13 @@ export function fit(camera: Camera, bounds: Bounds, mostPxPerUm = MOST_PX_PER_UM
 	};
 }
 
+/** Moves a fitted rectangle to the right of something that covers the left, as far as there is room. */
+export function beside(camera: Camera, bounds: Bounds, coveredPx: number): Camera {
+	const spare = camera.widthPx / 2 - ((bounds.maxX - bounds.minX) / 2) * camera.pxPerUm;
+	const shift = Math.min(coveredPx + FIT_MARGIN_PX - spare, spare - FIT_MARGIN_PX);
+	return shift <= 0 ? camera : panBy(camera, shift, 0);
+}
+
 /** The part of the die in view, um. */
 export function viewOf(camera: Camera): Bounds {
 	const halfWidth = camera.widthPx / 2 / camera.pxPerUm;

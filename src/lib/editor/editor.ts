@@ -16,7 +16,7 @@ import {
 	type PlacementIndex,
 	type PlacementReason
 } from '#lib/floorplan/legality/index.ts';
-import { fit, panBy, viewOf, zoomAt, type Camera } from './camera.ts';
+import { beside, fit, panBy, viewOf, zoomAt, type Camera } from './camera.ts';
 import { explainFailure } from './explain.ts';
 import { History, type StepOffer } from './history.ts';
 import type { PointerInput } from './input.ts';
@@ -86,6 +86,7 @@ export class Editor implements ToolHost {
 	camera: Camera = { centreXUm: 0, centreYUm: 0, pxPerUm: 0.1, widthPx: 1, heightPx: 1 };
 	/** The camera still follows the canvas's size: nobody has moved it yet. */
 	#isFitted = true;
+	#clearPx = 0;
 
 	constructor(
 		floorplan: Floorplan,
@@ -328,6 +329,18 @@ export class Editor implements ToolHost {
 		for (let most = 3; most > 0 && this.#state.cancel; most--) this.#state.cancel();
 	}
 
+	/** Whether something is going on that can be given up. */
+	get isBusy(): boolean {
+		return this.#state.cancel !== undefined;
+	}
+
+	/** The pointer has left the canvas. */
+	pointerLeave(): void {
+		if (this.hovered === null) return;
+		this.hovered = null;
+		this.changed();
+	}
+
 	pointerDown(input: PointerInput): void {
 		this.endBurst();
 		this.#state.pointerDown?.(input);
@@ -390,9 +403,16 @@ export class Editor implements ToolHost {
 		this.changed();
 	}
 
+	/** Keeps so much of the canvas's left clear of the whole die, px, as far as there is room. */
+	keepClear(leftPx: number): void {
+		this.#clearPx = leftPx;
+		if (this.#isFitted) this.fitAll();
+	}
+
 	fitAll(): void {
 		this.#isFitted = true;
-		this.camera = fit(this.camera, boundsOf(this.#floorplan.die.outline));
+		const bounds = boundsOf(this.#floorplan.die.outline);
+		this.camera = beside(fit(this.camera, bounds), bounds, this.#clearPx);
 		this.changed();
 	}
 

@@ -15,3 +15,5 @@ export { hiddenCount } from './visibility.ts';
 export type { RegulatorTemplate } from './tools/place/placing.ts';
 export { placing } from './tools/place/placing.ts';
 export { probing } from './tools/probe/probing.ts';
+export type { LimitedMap, Reading } from './reading.ts';
+export { readAt } from './reading.ts';

@@ -16,10 +16,16 @@ interface SessionOptions {
 	readonly userId: string;
 	readonly client: ApiClient;
 	readonly canDraw: boolean;
+	readonly canEditLoads: boolean;
 	/** A job or result of this floorplan changed. */
 	readonly onEvent: (event: FloorplanEvent) => void;
 	/** Others' edits have just arrived. */
 	readonly onRemote: (by: string, label: string) => void;
+}
+
+function schedule(delayMs: number, callback: () => void): () => void {
+	const timer = setTimeout(callback, delayMs);
+	return () => clearTimeout(timer);
 }
 
 /** One open floorplan: its editor, kept in step with the server and its events. */
@@ -30,16 +36,21 @@ export class FloorplanSession {
 	readonly #onOnline = () => this.#sync.retryNow();
 	syncState = $state.raw<SyncState>() as SyncState;
 
-	constructor({ detail, userId, client, canDraw, onEvent, onRemote }: SessionOptions) {
+	constructor({
+		detail,
+		userId,
+		client,
+		canDraw,
+		canEditLoads,
+		onEvent,
+		onRemote
+	}: SessionOptions) {
 		this.#sync = new SyncClient({
 			document: detail.document,
 			version: detail.version,
 			transport: floorplanTransport(client, detail.id),
 			storage: createEditStorage(localStorage, userId, detail.id),
-			schedule: (delayMs, callback) => {
-				const timer = setTimeout(callback, delayMs);
-				return () => clearTimeout(timer);
-			},
+			schedule,
 			newId: () => crypto.randomUUID(),
 			onChange: ({ document, remote }) => {
 				this.syncState = this.#sync.state;
@@ -53,7 +64,8 @@ export class FloorplanSession {
 			{
 				submit: (draft: EditDraft) => this.#sync.submit({ id: crypto.randomUUID(), ...draft })
 			},
-			canDraw
+			canDraw,
+			{ canEditLoads, schedule }
 		);
 		this.state = new EditorState(editor);
 		this.#events = this.#listen(detail.id, onEvent);
@@ -92,6 +104,7 @@ export class FloorplanSession {
 	}
 
 	close(): void {
+		this.state.editor.endBurst();
 		this.#events.close();
 		this.#sync.dispose();
 		removeEventListener('online', this.#onOnline);

@@ -1,4 +1,4 @@
-import type { Floorplan } from '#lib/floorplan/index.ts';
+import type { Floorplan, Limits } from '#lib/floorplan/index.ts';
 import {
 	limitContour,
 	mapPixels,
@@ -24,9 +24,16 @@ export function netsOf(floorplan: Floorplan, choice: string): string[] {
 	return floorplan.nets.filter(({ kind }) => kind === 'regulated').map(({ id }) => id);
 }
 
-/** Limit of drop that holds on a net, V; null where nothing is limited. */
-export function dropLimitOf({ limits }: Floorplan, net: string): number | null {
-	return limits.overrides?.nets?.[net]?.dropV ?? limits.dropV ?? null;
+/** A net with its map. */
+export interface NetMap {
+	readonly net: string;
+	readonly map: DropMap;
+}
+
+/** Limit of what is shown of a net, V; null where nothing is limited. */
+export function dropLimitOf(limits: Limits, net: string, plane: MapPlane): number | null {
+	// The limit is on what a load sees, not on one of its two parts.
+	return plane === 'dropV' ? (limits.overrides?.nets?.[net]?.dropV ?? limits.dropV ?? null) : null;
 }
 
 export interface MapPicture {
@@ -44,8 +51,8 @@ export type MakeImage = (
 
 /** Maps of several nets on one scale from 0, made ready to be painted. */
 export function preparePicture(
-	floorplan: Floorplan,
-	maps: readonly { readonly net: string; readonly map: DropMap }[],
+	drawnLimits: Limits,
+	maps: readonly NetMap[],
 	plane: MapPlane,
 	wash: Uint8ClampedArray,
 	makeImage: MakeImage
@@ -56,7 +63,7 @@ export function preparePicture(
 	);
 	// From 0 up, so that the same colour is the same drop in every mode; below only where there is a rise.
 	const range = { min: Math.min(0, min), max: Math.max(max, 1e-9) };
-	const limits = maps.map(({ net }) => (plane === 'dropV' ? dropLimitOf(floorplan, net) : null));
+	const limits = maps.map(({ net }) => dropLimitOf(drawnLimits, net, plane));
 	return {
 		range,
 		limitsV: [...new Set(limits.filter((limit) => limit !== null))].sort((a, b) => a - b),

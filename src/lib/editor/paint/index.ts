@@ -8,7 +8,7 @@ export { strapLines } from './strap-lines.ts';
 export { paintSheet, paintStraps, traceOutline } from './paint-base.ts';
 export type { PreparedMap } from './paint-map.ts';
 export { paintMaps } from './paint-map.ts';
-export type { PaintContext } from './paint-objects.ts';
+export type { PaintContext, RegulatorPicture } from './paint-objects.ts';
 export {
 	cellsById,
 	paintBlock,
@@ -18,3 +18,7 @@ export {
 	paintRegulator,
 	paintSpot
 } from './paint-objects.ts';
+export type { OverlayPicture } from './paint-overlay.ts';
+export { paintOverlay } from './paint-overlay.ts';
+export type { Scene } from './paint-scene.ts';
+export { paintScene } from './paint-scene.ts';

@@ -9,7 +9,9 @@ import type { PaintTheme } from './theme.ts';
 /** Sites are drawn once they are this far apart, px. */
 const SITE_LEAST_PX = 9;
 /** Straps nearer to each other than this are thinned out, px. */
-const STRAP_LEAST_PX = 3;
+const STRAP_LEAST_PX = 5;
+/** Lines nearer to each other than this are fainter, px. */
+const STRAP_FAINT_PX = 14;
 
 /** Traces a closed outline in screen pixels. */
 export function traceOutline(
@@ -60,7 +62,19 @@ export function paintSheet(
 	context.restore();
 }
 
-/** The straps in view: one path per pattern, thinned out where single lines could not be told apart. */
+/** How strongly straps are drawn: by themselves, or faintly over a map that is to be read. */
+const STRAP_ALPHA = {
+	plain: { line: 0.5, edge: 0.65, fill: 0.16 },
+	overMap: { line: 0.16, edge: 0.3, fill: 0.05 }
+} as const;
+
+/** A strap is a thin line until it is this wide, px; then it has two edges. */
+const STRAP_WIDE_PX = 3;
+
+/**
+ * The straps in view, one path per pattern. From afar only every n-th line is drawn, fainter the
+ * closer the lines come; from near a strap is a tinted band between two thin edges.
+ */
 export function paintStraps(
 	context: CanvasRenderingContext2D,
 	{
@@ -68,36 +82,77 @@ export function paintStraps(
 		camera,
 		theme,
 		visibility,
-		alpha
+		isOverMap
 	}: {
 		lines: readonly StrapLines[];
 		camera: Camera;
 		theme: PaintTheme;
 		visibility: Visibility;
-		alpha: number;
+		isOverMap: boolean;
 	}
 ): void {
-	const view = viewOf(camera);
+	const alpha = isOverMap ? STRAP_ALPHA.overMap : STRAP_ALPHA.plain;
 	context.save();
-	context.globalAlpha = alpha;
-	for (const { strap, netKind, isHorizontal, pieces } of lines) {
+	for (const pattern of lines) {
+		const { strap, netKind } = pattern;
 		if (!visibility.layers.has(strap.layer) || !visibility.nets.has(strap.net)) continue;
-		const [low, high] = isHorizontal ? [view.minY, view.maxY] : [view.minX, view.maxX];
-		const every = Math.max(1, Math.ceil(STRAP_LEAST_PX / (strap.pitchUm * camera.pxPerUm)));
+		const pitchPx = strap.pitchUm * camera.pxPerUm;
+		const widthPx = strap.widthUm * camera.pxPerUm;
+		const every = Math.max(1, Math.ceil(STRAP_LEAST_PX / pitchPx));
 		context.beginPath();
 		context.strokeStyle = theme.straps[netKind];
-		context.lineWidth = Math.max(0.6, strap.widthUm * camera.pxPerUm);
-		for (let p = 0; p < pieces.length; p += 3) {
-			const across = pieces[p + 2];
-			if (across < low || across > high) continue;
-			if (Math.round((across - strap.offsetUm) / strap.pitchUm) % every !== 0) continue;
-			const [start, end] = isHorizontal
-				? [diePoint(pieces[p], across), diePoint(pieces[p + 1], across)]
-				: [diePoint(across, pieces[p]), diePoint(across, pieces[p + 1])];
-			context.moveTo(...toScreen(camera, start));
-			context.lineTo(...toScreen(camera, end));
+		if (widthPx < STRAP_WIDE_PX) {
+			tracePieces(context, camera, pattern, every, 0);
+			context.globalAlpha = alpha.line * Math.min(1, (pitchPx * every) / STRAP_FAINT_PX);
+			context.lineWidth = Math.max(0.6, widthPx);
+		} else {
+			tracePieces(context, camera, pattern, every, widthPx);
+			context.fillStyle = theme.straps[netKind];
+			context.globalAlpha = alpha.fill;
+			context.fill();
+			context.globalAlpha = alpha.edge;
+			context.lineWidth = 0.8;
 		}
 		context.stroke();
 	}
 	context.restore();
+}
+
+/** Traces the pieces of a pattern that are in view: as lines, or as bands of a width, px. */
+function tracePieces(
+	context: CanvasRenderingContext2D,
+	camera: Camera,
+	{ strap, isHorizontal, pieces }: StrapLines,
+	every: number,
+	widthPx: number
+): void {
+	const view = viewOf(camera);
+	const half = strap.widthUm / 2;
+	const [low, high] = isHorizontal ? [view.minY, view.maxY] : [view.minX, view.maxX];
+	const [left, right] = isHorizontal ? [view.minX, view.maxX] : [view.minY, view.maxY];
+	for (let p = 0; p < pieces.length; p += 3) {
+		const across = pieces[p + 2];
+		if (across + half < low || across - half > high) continue;
+		if (Math.round((across - strap.offsetUm) / strap.pitchUm) % every !== 0) continue;
+		// Cut to a little more than the view, so that ends and dashes far outside cost nothing.
+		const start = Math.max(pieces[p], left - strap.pitchUm);
+		const end = Math.min(pieces[p + 1], right + strap.pitchUm);
+		if (end <= start) continue;
+		const [fromX, fromY] = toScreen(
+			camera,
+			isHorizontal ? diePoint(start, across) : diePoint(across, start)
+		);
+		const [toX, toY] = toScreen(
+			camera,
+			isHorizontal ? diePoint(end, across) : diePoint(across, end)
+		);
+		if (widthPx > 0 && isHorizontal) {
+			context.rect(fromX, fromY - widthPx / 2, toX - fromX, widthPx);
+		} else if (widthPx > 0) {
+			context.rect(fromX - widthPx / 2, toY, widthPx, fromY - toY);
+		} else {
+			context.moveTo(fromX, fromY);
+			context.lineTo(toX, toY);
+		}
+	}
 }

@@ -16,6 +16,8 @@ export interface PreparedMap {
 /** Distance between the hatching lines beyond the limit, px. */
 const HATCH_PX = 7;
 
+const STALE_ALPHA = 0.45;
+
 const NM_PER_UM = 1000;
 
 /** Screen coordinates of a place in cell units. */
@@ -34,9 +36,16 @@ function cellPoint(
 /** The wash over the die; cells keep their edges, since values between them are not known. */
 export function paintMaps(
 	context: CanvasRenderingContext2D,
-	{ maps, camera, theme }: { maps: readonly PreparedMap[]; camera: Camera; theme: PaintTheme }
+	{
+		maps,
+		camera,
+		theme,
+		isStale
+	}: { maps: readonly PreparedMap[]; camera: Camera; theme: PaintTheme; isStale: boolean }
 ): void {
 	context.save();
+	// A map of another drawing than this one is pale.
+	context.globalAlpha = isStale ? STALE_ALPHA : 1;
 	context.imageSmoothingEnabled = false;
 	for (const { map, image } of maps) {
 		const [left, top] = cellPoint(map, camera, 0, map.rows);

@@ -1,6 +1,6 @@
 import { formatQuantity } from '#lib/units/index.ts';
 import type { Bounds } from '#lib/geometry/index.ts';
-import type { Block, Feed, Floorplan, Keepout, Regulator } from '#lib/floorplan/index.ts';
+import type { Block, Feed, Floorplan, Keepout } from '#lib/floorplan/index.ts';
 import type { RegulatorResult } from '#lib/results/index.ts';
 import type { Camera } from '../camera.ts';
 import { toScreen } from '../camera.ts';
@@ -15,8 +15,8 @@ export interface PaintContext {
 }
 
 const FONT = '"Source Sans 3", sans-serif';
-/** Names are written where a block is at least this wide, px. */
-const NAME_LEAST_PX = 56;
+const NAME_FONT = `600 11.5px ${FONT}`;
+const FIGURE_FONT = `400 11.5px ${FONT}`;
 /** Gauges are drawn where a footprint is at least this high, px. */
 const GAUGE_LEAST_PX = 5;
 
@@ -26,20 +26,63 @@ function screenRect(camera: Camera, { minX, minY, maxX, maxY }: Bounds) {
 	return [left, top, (maxX - minX) * camera.pxPerUm, (maxY - minY) * camera.pxPerUm] as const;
 }
 
-/** A text that stays readable over any colour of the map. */
-function haloText(
+/** The outline of something selected is at least this large, px. */
+const MARK_LEAST_PX = 10;
+const SLIP_HEIGHT_PX = 16;
+const SLIP_PADDING_PX = 4;
+/** A name is cut short to no fewer letters than this. */
+const NAME_LEAST_LETTERS = 4;
+
+/** The name, or as much of its beginning as fits; null where that would say nothing. */
+function shortened(context: CanvasRenderingContext2D, name: string, roomPx: number): string | null {
+	if (context.measureText(name).width <= roomPx) return name;
+	for (let letters = name.length - 1; letters >= NAME_LEAST_LETTERS; letters--) {
+		const short = `${name.slice(0, letters)}…`;
+		if (context.measureText(short).width <= roomPx) return short;
+	}
+	return null;
+}
+
+/**
+ * A slip of paper with a name and a figure: readable over any colour of the map. What does not fit
+ * into the width is left out, the figure first.
+ */
+function paintSlip(
 	{ context, theme }: PaintContext,
-	text: string,
-	x: number,
-	y: number,
-	colour = theme.ink
+	name: string,
+	figure: string,
+	box: readonly [left: number, top: number, width: number, height: number],
+	camera: Camera
 ): void {
-	context.lineJoin = 'round';
-	context.lineWidth = 3;
-	context.strokeStyle = theme.sheet;
-	context.strokeText(text, x, y);
-	context.fillStyle = colour;
-	context.fillText(text, x, y);
+	const [left, top, width, height] = box;
+	if (height < SLIP_HEIGHT_PX + 4) return;
+	const room = width - 4;
+	context.textAlign = 'left';
+	context.textBaseline = 'middle';
+	context.font = NAME_FONT;
+	const text = shortened(context, name, room - 2 * SLIP_PADDING_PX);
+	if (text === null) return;
+	const nameWidth = context.measureText(text).width;
+	context.font = FIGURE_FONT;
+	const full = nameWidth + context.measureText(figure).width + 3 * SLIP_PADDING_PX;
+	const hasFigure = full <= room;
+	const slip = hasFigure ? full : nameWidth + 2 * SLIP_PADDING_PX;
+	// Stays in sight while any of its block is.
+	const x = Math.max(left, Math.min(0, left + width - slip));
+	const y = Math.max(top, Math.min(0, top + height - SLIP_HEIGHT_PX));
+	if (x > camera.widthPx || y > camera.heightPx) return;
+	context.globalAlpha = 0.88;
+	context.fillStyle = theme.paper;
+	context.fillRect(x + 0.5, y + 0.5, slip, SLIP_HEIGHT_PX);
+	context.globalAlpha = 1;
+	const middle = y + SLIP_HEIGHT_PX / 2 + 1;
+	context.font = NAME_FONT;
+	context.fillStyle = theme.ink;
+	context.fillText(text, x + SLIP_PADDING_PX, middle);
+	if (!hasFigure) return;
+	context.font = FIGURE_FONT;
+	context.fillStyle = theme.inkSoft;
+	context.fillText(figure, x + nameWidth + 2 * SLIP_PADDING_PX, middle);
 }
 
 /** A block: outline, name, current in the mode. */
@@ -51,20 +94,17 @@ export function paintBlock(
 ): void {
 	const { context, camera, theme } = paint;
 	traceOutline(context, camera, block.outline);
+	context.strokeStyle = theme.paper;
+	context.globalAlpha = 0.4;
+	context.lineWidth = 2.5;
+	context.stroke();
 	context.strokeStyle = theme.ink;
-	context.globalAlpha = 0.75;
+	context.globalAlpha = 0.85;
 	context.lineWidth = 1;
 	context.stroke();
 	context.globalAlpha = 1;
-	const [left, top, width, height] = screenRect(camera, bounds);
-	if (width < NAME_LEAST_PX || height < 30) return;
-	context.textAlign = 'left';
-	context.textBaseline = 'top';
-	context.font = `600 12px ${FONT}`;
-	haloText(paint, block.name ?? block.id, left + 5, top + 4);
-	context.font = `400 11px ${FONT}`;
-	const amps = block.amps[modeId] ?? 0;
-	haloText(paint, formatQuantity(amps, 'A', { digits: 3 }), left + 5, top + 18, theme.inkSoft);
+	const amps = formatQuantity(block.amps[modeId] ?? 0, 'A', { digits: 3 });
+	paintSlip(paint, block.name ?? block.id, amps, screenRect(camera, bounds), camera);
 }
 
 /** A keep-out: hatched across the straps' directions. */
@@ -99,10 +139,11 @@ export function paintFeed(
 	isGround: boolean
 ): void {
 	const [x, y] = toScreen(camera, diePoint(feed.xUm, feed.yUm));
-	const radius = Math.min(9, Math.max(1.6, 22 * camera.pxPerUm));
+	const radius = Math.min(9, Math.max(1.4, 20 * camera.pxPerUm));
 	context.beginPath();
 	context.arc(x, y, radius, 0, 2 * Math.PI);
-	context.globalAlpha = 0.7;
+	// From afar they are a texture, not objects.
+	context.globalAlpha = radius < 3 ? 0.45 : 0.8;
 	if (isGround) {
 		context.fillStyle = theme.straps.ground;
 		context.fill();
@@ -114,71 +155,139 @@ export function paintFeed(
 	context.globalAlpha = 1;
 }
 
+/** A regulator as it is drawn. */
+export interface RegulatorPicture {
+	readonly id: string;
+	readonly bounds: Bounds;
+	readonly isEnabled: boolean;
+	readonly isFixed: boolean;
+	/** What the result shown says of it; null where there is none. */
+	readonly result: Pick<RegulatorResult, 'state' | 'loadFraction'> | null;
+	/** Something speaks against its place. */
+	readonly isIllegal: boolean;
+}
+
+/** The gauge reaches a little beyond the rating, so that the mark of the rating can be seen. */
+const GAUGE_TOP = 1.12;
+/** The id is written where the footprint is at least this wide, px. */
+const ID_LEAST_PX = 76;
+
 /**
- * A regulator: its footprint with a level gauge. The fill rises with the current, the top edge is the
- * rating; each state has an outline of its own.
+ * A regulator: its footprint with a level gauge that rises with the current to a mark at the rating;
+ * each state has an outline of its own, so that it shows without colour.
  */
-export function paintRegulator(
-	paint: PaintContext,
-	regulator: Pick<Regulator, 'enabled'>,
-	bounds: Bounds,
-	result: RegulatorResult | null,
-	isIllegal: boolean
-): void {
+export function paintRegulator(paint: PaintContext, picture: RegulatorPicture): void {
 	const { context, camera, theme } = paint;
-	const [left, top, width, height] = screenRect(camera, bounds);
-	const state = regulator.enabled ? (result?.state ?? null) : 'off';
+	const { result, isIllegal } = picture;
+	const box = screenRect(camera, picture.bounds);
+	const [left, top, width, height] = box;
+	const state = picture.isEnabled ? (result?.state ?? null) : 'off';
+	const isSmall = height < GAUGE_LEAST_PX;
 	context.fillStyle = theme.sheet;
 	context.fillRect(left, top, width, height);
 	if (result && state !== 'off') {
-		const level = Math.min(1, Math.max(0, result.loadFraction));
-		context.fillStyle = theme.brassFill;
+		const level = Math.min(1, Math.max(0, result.loadFraction / GAUGE_TOP));
+		context.fillStyle = state === 'limited' && isSmall ? theme.brass : theme.brassFill;
 		context.fillRect(left, top + height * (1 - level), width, height * level);
 	}
 	context.strokeStyle = isIllegal ? theme.vermilion : theme.brass;
 	context.lineWidth = isIllegal ? 2 : 1.2;
-	if (height < GAUGE_LEAST_PX) {
-		context.strokeRect(left, top, width, height);
-		return;
+	if (state === 'idle') context.setLineDash(isSmall ? [2, 2] : [4, 3]);
+	context.strokeRect(left, top, width, height);
+	context.setLineDash([]);
+	if (isIllegal) hatch(paint, box);
+	if (isSmall) return;
+	if (result && height >= 12) paintRating(paint, box);
+	if (state !== null) paintState(paint, state, box);
+	if (picture.isFixed) paintPin(paint, box);
+	if (width >= ID_LEAST_PX && height >= 16) {
+		context.font = `400 11px ${FONT}`;
+		context.textAlign = 'center';
+		context.textBaseline = 'middle';
+		context.fillStyle = theme.ink;
+		context.fillText(picture.id, left + width / 2, top + height / 2 + 1, width - 8);
 	}
+}
+
+type Box = readonly [left: number, top: number, width: number, height: number];
+
+/** Two short marks where the gauge stands at the rating. */
+function paintRating({ context, theme }: PaintContext, [left, top, width, height]: Box): void {
+	const y = top + height * (1 - 1 / GAUGE_TOP);
+	const length = Math.min(6, width / 4);
+	context.beginPath();
+	context.moveTo(left, y);
+	context.lineTo(left + length, y);
+	context.moveTo(left + width - length, y);
+	context.lineTo(left + width, y);
+	context.strokeStyle = theme.ink;
+	context.lineWidth = 1;
+	context.stroke();
+}
+
+function paintState(
+	{ context, theme }: PaintContext,
+	state: RegulatorResult['state'],
+	[left, top, width, height]: Box
+): void {
+	context.strokeStyle = theme.brass;
+	context.fillStyle = theme.brass;
+	context.lineWidth = 1.2;
 	switch (state) {
 		case 'limited':
-			// Full to the brim: the rating mark is a bar.
-			context.strokeRect(left, top, width, height);
-			context.fillStyle = theme.brass;
-			context.fillRect(left, top - 1, width, Math.max(2.5, height * 0.18));
+			// Full to the brim: a second frame around the first.
+			context.strokeRect(left - 3, top - 3, width + 6, height + 6);
 			break;
 		case 'dropout':
-			// The pass device is fully on: an open notch underneath.
-			context.strokeRect(left, top, width, height);
+			// The pass device is fully on: an open wedge beneath.
 			context.beginPath();
-			context.moveTo(left + width / 2 - 4, top + height + 5);
+			context.moveTo(left + width / 2 - 5, top + height + 6);
 			context.lineTo(left + width / 2, top + height);
-			context.lineTo(left + width / 2 + 4, top + height + 5);
+			context.lineTo(left + width / 2 + 5, top + height + 6);
 			context.closePath();
-			context.fillStyle = theme.brass;
 			context.fill();
 			break;
-		case 'idle':
-			context.setLineDash([3, 2]);
-			context.strokeRect(left, top, width, height);
-			context.setLineDash([]);
-			break;
 		case 'off':
-			context.globalAlpha = 0.7;
-			context.strokeRect(left, top, width, height);
 			context.beginPath();
 			context.moveTo(left, top);
 			context.lineTo(left + width, top + height);
 			context.moveTo(left + width, top);
 			context.lineTo(left, top + height);
 			context.stroke();
-			context.globalAlpha = 1;
 			break;
+		case 'idle':
 		case 'regulating':
-		case null:
-			context.strokeRect(left, top, width, height);
+			break;
 	}
+}
+
+/** A filled corner: the unit is fixed. */
+function paintPin({ context, theme }: PaintContext, [left, top, , height]: Box): void {
+	const side = Math.min(8, height / 2);
+	context.beginPath();
+	context.moveTo(left, top + height);
+	context.lineTo(left + side, top + height);
+	context.lineTo(left, top + height - side);
+	context.closePath();
+	context.fillStyle = theme.ink;
+	context.fill();
+}
+
+/** Slanting lines: something is wrong with the place. */
+function hatch({ context, theme }: PaintContext, [left, top, width, height]: Box): void {
+	context.save();
+	context.beginPath();
+	context.rect(left, top, width, height);
+	context.clip();
+	context.beginPath();
+	for (let x = left - height; x < left + width; x += 5) {
+		context.moveTo(x, top + height);
+		context.lineTo(x + height, top);
+	}
+	context.strokeStyle = theme.vermilion;
+	context.lineWidth = 1;
+	context.stroke();
+	context.restore();
 }
 
 /** A numbered mark at a worst spot. */
@@ -198,6 +307,13 @@ export function paintSpot(
 	context.strokeStyle = isBroken ? theme.vermilion : theme.ink;
 	context.lineWidth = isBroken ? 2.5 : 1.25;
 	context.stroke();
+	if (isBroken) {
+		// A second ring, so that a broken limit shows without colour.
+		context.beginPath();
+		context.arc(x, y, 12, 0, 2 * Math.PI);
+		context.lineWidth = 1.25;
+		context.stroke();
+	}
 	context.font = `600 11px ${FONT}`;
 	context.textAlign = 'center';
 	context.textBaseline = 'middle';
@@ -211,10 +327,9 @@ export function paintMarked(
 	bounds: Bounds,
 	isSelected: boolean
 ): void {
-	const LEAST_PX = 10;
 	let [left, top, width, height] = screenRect(camera, bounds);
-	const growX = Math.max(3, (LEAST_PX - width) / 2);
-	const growY = Math.max(3, (LEAST_PX - height) / 2);
+	const growX = Math.max(3, (MARK_LEAST_PX - width) / 2);
+	const growY = Math.max(3, (MARK_LEAST_PX - height) / 2);
 	left -= growX;
 	top -= growY;
 	width += 2 * growX;

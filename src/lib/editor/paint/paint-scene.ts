@@ -1,9 +1,9 @@
-import { boundsOf } from '#lib/geometry/index.ts';
-import type { Floorplan } from '#lib/floorplan/index.ts';
+import { boundsOf, type Bounds } from '#lib/geometry/index.ts';
+import type { Cell, Floorplan, Regulator } from '#lib/floorplan/index.ts';
 import type { PlacedList } from '#lib/floorplan/edits/index.ts';
 import { footprintOf } from '#lib/floorplan/legality/index.ts';
-import type { ResultFile } from '#lib/results/index.ts';
-import type { Visibility } from '#lib/editor/index.ts';
+import type { RegulatorResult, Spot } from '#lib/results/index.ts';
+import type { Visibility } from '../visibility.ts';
 import {
 	cellsById,
 	paintBlock,
@@ -11,8 +11,9 @@ import {
 	paintKeepout,
 	paintRegulator,
 	paintSpot,
-	type PaintContext
-} from '#lib/editor/paint/index.ts';
+	type PaintContext,
+	type RegulatorPicture
+} from './paint-objects.ts';
 
 export interface Scene {
 	readonly floorplan: Floorplan;
@@ -20,13 +21,36 @@ export interface Scene {
 	readonly shown: Readonly<Record<PlacedList, readonly number[]>>;
 	readonly visibility: Visibility;
 	readonly modeId: string;
-	readonly result: ResultFile | null;
-	readonly spots: ResultFile['spots'];
+	/** What the result shown says of each regulator, by id. */
+	readonly results: ReadonlyMap<string, RegulatorResult>;
+	/** Regulators that stand illegally, by id. */
+	readonly problems: ReadonlyMap<string, unknown>;
+	readonly spots: readonly Spot[];
+}
+
+/** How a regulator of the document is drawn; null where its cell is not defined. */
+export function pictureOf(
+	cells: ReadonlyMap<string, Cell>,
+	regulator: Regulator,
+	result: RegulatorResult | undefined,
+	isIllegal: boolean
+): RegulatorPicture | null {
+	const bounds: Bounds | null = footprintOf(cells, regulator);
+	if (!bounds) return null;
+	const { id, enabled, fixed } = regulator;
+	return {
+		id,
+		bounds,
+		isEnabled: enabled,
+		isFixed: fixed,
+		result: result ?? null,
+		isIllegal
+	};
 }
 
 /** Draws the placed things in view, from what lies low to what lies on top. */
 export function paintScene(paint: PaintContext, scene: Scene): void {
-	const { floorplan, shown, visibility, modeId, result, spots } = scene;
+	const { floorplan, shown, visibility, modeId, results, problems, spots } = scene;
 	const { lists } = visibility;
 	if (lists.keepouts) {
 		for (const index of shown.keepouts) {
@@ -51,17 +75,11 @@ export function paintScene(paint: PaintContext, scene: Scene): void {
 	}
 	if (lists.regulators) {
 		const cells = cellsById(floorplan);
-		const illegal = new Set(
-			result?.findings.flatMap(({ kind, subject }) => (kind === 'placement' ? [subject] : []))
-		);
 		for (const index of shown.regulators) {
 			const regulator = floorplan.regulators[index];
-			const bounds = footprintOf(cells, regulator);
-			if (!bounds) continue;
-			// Results keep the order of the document, unless it was edited since.
-			const found = result?.regulators[index];
-			const own = found?.id === regulator.id ? found : null;
-			paintRegulator(paint, regulator, bounds, own, illegal.has(regulator.id));
+			const { id } = regulator;
+			const picture = pictureOf(cells, regulator, results.get(id), problems.has(id));
+			if (picture) paintRegulator(paint, picture);
 		}
 	}
 	spots.forEach(({ xUm, yUm, marginV }, i) =>
