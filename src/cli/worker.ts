@@ -8,6 +8,9 @@ import { startWorker } from '#lib/server/jobs/worker.ts';
 import { log } from '#lib/server/log.ts';
 import { runService } from './run-service.ts';
 
+/** Time to give a running job back before the process ends all the same. */
+const STOP_GRACE_MS = 5000;
+
 await runService('worker', async () => {
 	const solver = new SolveRunner();
 	const worker = await startWorker(
@@ -17,6 +20,8 @@ await runService('worker', async () => {
 	);
 	log.info('worker ready');
 	const stop = async () => {
+		// With the database gone there is nobody to give the job back to: its lock is free as well.
+		setTimeout(() => process.exit(1), STOP_GRACE_MS).unref();
 		await worker.stop();
 		solver.stop();
 		await closeDatabase();
