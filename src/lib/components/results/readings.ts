@@ -24,11 +24,12 @@ export function readRails(result: ResultFile): RailReading[] {
 	return result.nets.flatMap((net) => {
 		const places = [...result.spots, ...result.blocks].filter((place) => place.net === net.id);
 		const margins = places.flatMap(({ marginV }) => marginV ?? []);
-		const limits = result.spots.filter((spot) => spot.net === net.id);
+		// Spots come by severity; a net without one still has the limits of its blocks.
+		const limit = places.find(({ limitV }) => limitV !== null)?.limitV;
 		if (net.kind !== 'regulated' && margins.length === 0) return [];
 		return {
 			net,
-			limitV: limits[0]?.limitV ?? null,
+			limitV: limit ?? null,
 			leastMarginV: margins.length > 0 ? Math.min(...margins) : null
 		};
 	});
