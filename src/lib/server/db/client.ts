@@ -14,6 +14,14 @@ const IDLE_TRANSACTION_TIMEOUT_MS = 30_000;
 /** Wait for a connection. */
 const CONNECT_TIMEOUT_SECONDS = 10;
 
+/** Longest wait between tries to connect: people wait behind it once the database is back. */
+const LONGEST_BACKOFF_SECONDS = 1;
+
+/** Wait before the next try to connect, s; half a tenth at first, doubled each time. */
+export function backoff(retries: number): number {
+	return Math.min(0.05 * 2 ** retries, LONGEST_BACKOFF_SECONDS);
+}
+
 export interface Connection {
 	readonly db: Database;
 	readonly sql: postgres.Sql;
@@ -24,6 +32,7 @@ export function connect(url: string, connections: number): Connection {
 	const sql = postgres(url, {
 		max: connections,
 		connect_timeout: CONNECT_TIMEOUT_SECONDS,
+		backoff,
 		onnotice: () => {},
 		connection: {
 			application_name: 'manyweir',

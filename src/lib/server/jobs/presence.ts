@@ -1,7 +1,7 @@
 import { arrayContains, eq, sql } from 'drizzle-orm';
 import { drizzle } from 'drizzle-orm/postgres-js';
 import postgres from 'postgres';
-import type { Database, Handle } from '../db/client.ts';
+import { backoff, type Database, type Handle } from '../db/client.ts';
 import { workers } from '../db/schema/index.ts';
 import * as schema from '../db/schema/index.ts';
 import { log } from '../log.ts';
@@ -32,6 +32,7 @@ export class WorkerPresence {
 		this.#sql = postgres(url, {
 			max: 1,
 			max_lifetime: null,
+			backoff,
 			onnotice: () => {},
 			onclose: () => {
 				this.#lockKey = undefined;
