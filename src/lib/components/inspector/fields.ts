@@ -150,9 +150,9 @@ export function fieldsOf(
 					'Cell',
 					floorplan.cells.map(({ id }) => id)
 				),
+				choice('orient', 'Orientation', ORIENTATIONS),
 				quantity('xUm', 'x', 'um'),
 				quantity('yUm', 'y', 'um'),
-				choice('orient', 'Orientation', ORIENTATIONS),
 				choice('output', 'Output net', netsOf(floorplan, 'regulated')),
 				{
 					...plain('input', 'Input net', {
@@ -172,9 +172,9 @@ export function fieldsOf(
 		case 'feeds':
 			return [
 				NAME,
-				choice('net', 'Net', netsOf(floorplan, 'input', 'ground')),
 				quantity('xUm', 'x', 'um'),
 				quantity('yUm', 'y', 'um'),
+				choice('net', 'Net', netsOf(floorplan, 'input', 'ground')),
 				plain('seriesOhm', 'Series resistance', {
 					kind: 'quantity',
 					unit: 'ohm',
@@ -186,8 +186,8 @@ export function fieldsOf(
 			return [
 				NAME,
 				choice('net', 'Net', netsOf(floorplan, 'regulated', 'input')),
-				...frameFields(),
 				quantity('voltageExponent', 'Voltage exponent', '1'),
+				...frameFields(),
 				...currentFields(floorplan)
 			];
 		case 'keepouts':
