@@ -110,7 +110,11 @@ describe('requests that another site starts', () => {
 	});
 
 	it('of our own pages and of scripts are taken', async () => {
-		const own = [{ 'sec-fetch-site': 'same-origin' }, { origin: server.origin }, {}];
+		const own: Record<string, string>[] = [
+			{ 'sec-fetch-site': 'same-origin' },
+			{ origin: server.origin },
+			{}
+		];
 		for (const headers of own) {
 			const response = await send('POST', '/api/v1/projects', '{"name":"Ours"}', headers);
 			expect(response.status).toBe(201);
@@ -263,6 +267,7 @@ describe('what is kept', () => {
 		expect(resultFileSchema.parse(file)).toEqual(file);
 		expect(file.nets.map(({ id: net }) => net)).toEqual(['vdd']);
 		const map = decodeDropMap(await client.getMap(id, 'vdd'));
+		if (!map) throw new Error('no map');
 		expect(map.columns * map.rows).toBe(map.dropV.length);
 		expect(Math.max(...map.dropV.filter((value) => !Number.isNaN(value)))).toBeGreaterThan(0);
 		const missing = await lead(`/api/v1/results/${id}/maps/none`);
