@@ -92,30 +92,36 @@ function shifted(bounds: Bounds, dxUm: number, dyUm: number): Bounds {
 	};
 }
 
-/** Every line along which a rectangle agrees with its neighbours. */
+/** Gap between two rectangles, um; 0 where they meet. */
+function gapUm(a: Bounds, b: Bounds): number {
+	return Math.hypot(
+		Math.max(0, a.minX - b.maxX, b.minX - a.maxX),
+		Math.max(0, a.minY - b.maxY, b.minY - a.maxY)
+	);
+}
+
+/** Where one of our stops is one of theirs, the middle first; undefined where none is. */
+function metStop(own: readonly number[], theirs: readonly number[]): number | undefined {
+	const [low, middle, high] = own;
+	return [middle, low, high].find((stop) => theirs.some((one) => Math.abs(one - stop) < SAME_UM));
+}
+
+/** One line for each axis along which a rectangle agrees with a neighbour: the nearest that does. */
 export function guidesOf(bounds: Bounds, neighbours: readonly Bounds[]): Guide[] {
-	const found = new Map<string, Guide>();
-	const add = (axis: 'x' | 'y', atUm: number, ends: readonly number[]) => {
-		const key = `${axis}${onGridUm(atUm)}`;
-		const known = found.get(key);
-		const all = known ? [known.fromUm, known.toUm, ...ends] : ends;
-		found.set(key, { axis, atUm, fromUm: Math.min(...all), toUm: Math.max(...all) });
+	const nearest: Partial<Record<Guide['axis'], { guide: Guide; gap: number }>> = {};
+	const offer = (axis: Guide['axis'], atUm: number | undefined, gap: number, ends: number[]) => {
+		if (atUm === undefined || (nearest[axis] && nearest[axis].gap <= gap)) return;
+		const guide = { axis, atUm, fromUm: Math.min(...ends), toUm: Math.max(...ends) };
+		nearest[axis] = { guide, gap };
 	};
-	const isMet = (stop: number, theirs: readonly number[]) =>
-		theirs.some((one) => Math.abs(one - stop) < SAME_UM);
 	for (const other of neighbours) {
-		for (const x of stops(bounds.minX, bounds.maxX)) {
-			if (isMet(x, stops(other.minX, other.maxX))) {
-				add('x', x, [bounds.minY, bounds.maxY, other.minY, other.maxY]);
-			}
-		}
-		for (const y of stops(bounds.minY, bounds.maxY)) {
-			if (isMet(y, stops(other.minY, other.maxY))) {
-				add('y', y, [bounds.minX, bounds.maxX, other.minX, other.maxX]);
-			}
-		}
+		const gap = gapUm(bounds, other);
+		const x = metStop(stops(bounds.minX, bounds.maxX), stops(other.minX, other.maxX));
+		const y = metStop(stops(bounds.minY, bounds.maxY), stops(other.minY, other.maxY));
+		offer('x', x, gap, [bounds.minY, bounds.maxY, other.minY, other.maxY]);
+		offer('y', y, gap, [bounds.minX, bounds.maxX, other.minX, other.maxX]);
 	}
-	return [...found.values()];
+	return Object.values(nearest).map(({ guide }) => guide);
 }
 
 /**

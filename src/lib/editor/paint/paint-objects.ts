@@ -132,6 +132,11 @@ export function paintKeepout(
 	context.restore();
 }
 
+/** Radius of a bump's mark, px: about its true size, but never too small to see nor in the way. */
+function feedRadiusPx({ pxPerUm }: Camera): number {
+	return Math.min(9, Math.max(1.4, 20 * pxPerUm));
+}
+
 /** A bump: a ring for an input, a filled dot for ground. */
 export function paintFeed(
 	{ context, camera, theme }: PaintContext,
@@ -139,7 +144,7 @@ export function paintFeed(
 	isGround: boolean
 ): void {
 	const [x, y] = toScreen(camera, diePoint(feed.xUm, feed.yUm));
-	const radius = Math.min(9, Math.max(1.4, 20 * camera.pxPerUm));
+	const radius = feedRadiusPx(camera);
 	context.beginPath();
 	context.arc(x, y, radius, 0, 2 * Math.PI);
 	// From afar they are a texture, not objects.
@@ -321,25 +326,30 @@ export function paintSpot(
 	context.fillText(String(number), x, y + 0.5);
 }
 
-/** The outline of a selected or hovered thing: a double line that shows over any colour. */
+/**
+ * The outline of a selected or hovered thing: a double line that shows over any colour; around a
+ * bump, which has no size, a ring.
+ */
 export function paintMarked(
 	{ context, camera, theme }: PaintContext,
 	bounds: Bounds,
 	isSelected: boolean
 ): void {
-	let [left, top, width, height] = screenRect(camera, bounds);
-	const growX = Math.max(3, (MARK_LEAST_PX - width) / 2);
-	const growY = Math.max(3, (MARK_LEAST_PX - height) / 2);
-	left -= growX;
-	top -= growY;
-	width += 2 * growX;
-	height += 2 * growY;
+	const [left, top, width, height] = screenRect(camera, bounds);
+	context.beginPath();
+	if (width === 0 && height === 0) {
+		context.arc(left, top, feedRadiusPx(camera) + 4, 0, 2 * Math.PI);
+	} else {
+		const growX = Math.max(3, (MARK_LEAST_PX - width) / 2);
+		const growY = Math.max(3, (MARK_LEAST_PX - height) / 2);
+		context.rect(left - growX, top - growY, width + 2 * growX, height + 2 * growY);
+	}
 	context.strokeStyle = theme.paper;
 	context.lineWidth = isSelected ? 4.5 : 3;
-	context.strokeRect(left, top, width, height);
+	context.stroke();
 	context.strokeStyle = theme.accent;
 	context.lineWidth = isSelected ? 2 : 1;
-	context.strokeRect(left, top, width, height);
+	context.stroke();
 }
 
 /** Cells of a document by id, for footprints. */
