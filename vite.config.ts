@@ -16,6 +16,7 @@ export default defineConfig({
 				// Pure code: no database, no browser.
 				test: {
 					name: 'unit',
+					setupFiles: ['./tests/support/fixed-seed.ts'],
 					include: ['src/**/*.test.ts', 'tests/unit/**/*.test.ts'],
 					exclude: ['src/lib/server/**/*.test.ts']
 				}
@@ -24,6 +25,7 @@ export default defineConfig({
 				// The server's code on a real, throw-away database.
 				test: {
 					name: 'server',
+					setupFiles: ['./tests/support/fixed-seed.ts'],
 					include: ['src/lib/server/**/*.test.ts', 'tests/api/**/*.test.ts'],
 					globalSetup: ['./tests/support/database-setup.ts'],
 					testTimeout: 60_000,
@@ -36,7 +38,12 @@ export default defineConfig({
 			},
 			{
 				// The solver against numbers from outside the project.
-				test: { name: 'reference', include: ['tests/reference/**/*.test.ts'], testTimeout: 300_000 }
+				test: {
+					name: 'reference',
+					setupFiles: ['./tests/support/fixed-seed.ts'],
+					include: ['tests/reference/**/*.test.ts'],
+					testTimeout: 300_000
+				}
 			}
 		]
 	}
