@@ -1,4 +1,4 @@
-import { z } from 'zod';
+import type { z } from 'zod';
 import { resultFileSchema, type ResultFile } from '#lib/results/index.ts';
 import { sessionSchema, type SessionAnswer } from './account.ts';
 import { jobSchema, type Job } from './jobs.ts';

@@ -4,7 +4,7 @@ import { asProblem } from './hooks/problems.ts';
 
 /** Only paths of this product are followed: not //host, /\host or an encoded form of them. */
 export function ownPath(path: string, fallback: string): string {
-	let decoded = path;
+	let decoded: string;
 	try {
 		decoded = decodeURIComponent(path);
 	} catch {
