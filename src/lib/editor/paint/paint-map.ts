@@ -58,7 +58,17 @@ export function paintMaps(
 	}
 }
 
-/** The limit as a double line, and hatching beyond it: the breach shows without colour. */
+/**
+ * Widths of the lines of the limit, px, each over the one before: of paper and ink one stands out
+ * from every colour of the map by 3:1, vermilion says what it is.
+ */
+const LIMIT_LINES = [
+	['paper', 5],
+	['ink', 3.2],
+	['vermilion', 1.6]
+] as const;
+
+/** The limit as a line, and hatching beyond it: the breach shows without colour. */
 function paintLimit(
 	context: CanvasRenderingContext2D,
 	map: DropMap,
@@ -84,12 +94,11 @@ function paintLimit(
 		});
 		context.closePath();
 	}
-	context.strokeStyle = theme.paper;
-	context.lineWidth = 4;
-	context.stroke();
-	context.strokeStyle = theme.vermilion;
-	context.lineWidth = 2;
-	context.stroke();
+	for (const [colour, width] of LIMIT_LINES) {
+		context.strokeStyle = theme[colour];
+		context.lineWidth = width;
+		context.stroke();
+	}
 	context.clip('evenodd');
 	context.beginPath();
 	const height = maxY - minY;

@@ -327,8 +327,8 @@ export function paintSpot(
 }
 
 /**
- * The outline of a selected or hovered thing: a double line that shows over any colour; around a
- * bump, which has no size, a ring.
+ * The outline of a selected or hovered thing: paper and ink, of which one stands out from
+ * every colour of the map by 3:1; around a bump, which has no size, a ring.
  */
 export function paintMarked(
 	{ context, camera, theme }: PaintContext,
@@ -347,8 +347,8 @@ export function paintMarked(
 	context.strokeStyle = theme.paper;
 	context.lineWidth = isSelected ? 4.5 : 3;
 	context.stroke();
-	context.strokeStyle = theme.accent;
-	context.lineWidth = isSelected ? 2 : 1;
+	context.strokeStyle = theme.ink;
+	context.lineWidth = isSelected ? 2.25 : 1;
 	context.stroke();
 }
 
