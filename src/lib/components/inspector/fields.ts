@@ -232,3 +232,15 @@ export function sharedValue(items: readonly object[], { read }: InspectorField):
 	const isShared = values.length > 0 && values.every((value) => jsonEquals(value, values[0]));
 	return isShared ? values[0] : undefined;
 }
+
+/** Fields under their headings, in the order in which the headings first occur. */
+export function groupFields(
+	fields: readonly InspectorField[]
+): { readonly title: string; readonly members: readonly InspectorField[] }[] {
+	const groups = new Map<string, InspectorField[]>();
+	for (const field of fields) {
+		const title = field.group ?? '';
+		groups.set(title, [...(groups.get(title) ?? []), field]);
+	}
+	return [...groups].map(([title, members]) => ({ title, members }));
+}

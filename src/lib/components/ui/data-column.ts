@@ -31,3 +31,8 @@ export function cellText<Row>(row: Row, column: DataColumn<Row>): string {
 export function headText<Row>({ header, unit }: DataColumn<Row>): string {
 	return unit ? `${header} (${unit})` : header;
 }
+
+/** A text as filters compare it: capitals and hyphens make no difference ("dropout", "drop-out"). */
+export function searchable(text: string): string {
+	return text.toLowerCase().replaceAll('-', '');
+}
