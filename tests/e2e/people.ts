@@ -24,17 +24,32 @@ export async function openDemo(page: Page): Promise<void> {
 	await page.locator('a[href^="/floorplans/"]').first().click();
 	await expect(drawing(page)).toBeVisible();
 	await expect(page.locator('#die-canvas canvas').first()).toBeVisible();
-	await expect(page.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(page);
+}
+
+/** The server has every edit. */
+export async function expectSaved(page: Page): Promise<void> {
+	await expect(
+		page
+			.locator('header span:not(.sr-only)')
+			.filter({ hasText: /^\s*✓\s*Saved\s*$/ })
+			.first()
+	).toBeVisible();
+}
+
+/** Shown over the drawing while map and figures are of an earlier plan. */
+export function outOfDate(page: Page) {
+	return page.getByText('map and figures are of an earlier plan');
 }
 
 export function drawing(page: Page) {
-	return page.getByRole('application', { name: 'Floorplan drawing' });
+	return page.getByRole('application', { name: 'Floorplan', exact: true });
 }
 
 /** A row of the ledger by the id in its first cell. */
 export function ledgerRow(page: Page, id: string) {
 	const name = new RegExp(`^${id.replaceAll('.', '\\.')} `);
-	return page.getByRole('region', { name: 'Ledger' }).getByRole('row', { name });
+	return page.getByRole('region', { name: /^Ledger/ }).getByRole('row', { name });
 }
 
 /** Chooses a mode or corner by its name. */
@@ -47,5 +62,5 @@ export async function openPanel(
 	page: Page,
 	name: 'Reading' | 'Properties' | 'Layers'
 ): Promise<void> {
-	await page.getByRole('tab', { name }).click();
+	await page.getByRole('tab', { name: new RegExp(`^${name}`) }).click();
 }

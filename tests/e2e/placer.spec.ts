@@ -1,5 +1,13 @@
 import { expect, test } from '@playwright/test';
-import { drawing, ledgerRow, openDemo, openPanel, signIn } from './people.ts';
+import {
+	drawing,
+	expectSaved,
+	ledgerRow,
+	openDemo,
+	openPanel,
+	outOfDate,
+	signIn
+} from './people.ts';
 
 test('a placer moves a regulator, solves, and reads the answer', async ({ page }) => {
 	await signIn(page, 'placer');
@@ -7,7 +15,7 @@ test('a placer moves a regulator, solves, and reads the answer', async ({ page }
 
 	// The answer of the demo is there already: worst drop, spots, proof.
 	const reading = page.getByRole('tabpanel', { name: 'Reading' });
-	await expect(reading.getByRole('heading', { name: 'Worst drop' })).toBeVisible();
+	await expect(reading.getByRole('heading', { name: 'Worst spots' })).toBeVisible();
 	await expect(reading.getByText(/Currents add up at every node/)).toBeVisible();
 
 	// Select in the ledger, move by keys in the drawing.
@@ -20,12 +28,12 @@ test('a placer moves a regulator, solves, and reads the answer', async ({ page }
 	await page.keyboard.press('ArrowRight');
 	await page.keyboard.press('ArrowRight');
 	await expect(x).not.toHaveValue(before);
-	await expect(page.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(page);
 
 	// The map is of the plan as it was, until it is solved again.
-	await expect(page.getByText('Map out of date')).toBeVisible();
+	await expect(outOfDate(page)).toBeVisible();
 	await page.getByRole('button', { name: 'Solve', exact: true }).click();
-	await expect(page.getByText('Map out of date')).toBeHidden();
+	await expect(outOfDate(page)).toBeHidden();
 	await openPanel(page, 'Reading');
 	await expect(reading.getByText(/Power in equals power out/)).toBeVisible();
 
@@ -34,8 +42,8 @@ test('a placer moves a regulator, solves, and reads the answer', async ({ page }
 	await page.keyboard.press('Control+z');
 	await openPanel(page, 'Properties');
 	await expect(x).toHaveValue(before);
-	await expect(page.getByText('✓ Saved')).toBeVisible();
-	await expect(page.getByText('Map out of date')).toBeHidden();
+	await expectSaved(page);
+	await expect(outOfDate(page)).toBeHidden();
 });
 
 test('a placer drags a regulator with the pointer and takes it back', async ({ page }) => {
@@ -70,12 +78,12 @@ test('edits made offline are kept and sent on return', async ({ page, context })
 	await offset.press('Enter');
 	await expect(page.getByText(/Offline, 1 change waits/)).toBeVisible();
 	await context.setOffline(false);
-	await expect(page.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(page);
 	await page.reload();
 	await ledgerRow(page, 'core_0_5').click();
 	await openPanel(page, 'Properties');
 	await expect(offset).toHaveValue('2.5 mV');
 	await offset.fill(before);
 	await offset.press('Enter');
-	await expect(page.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(page);
 });

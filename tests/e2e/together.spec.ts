@@ -1,5 +1,5 @@
 import { expect, test } from '@playwright/test';
-import { drawing, ledgerRow, openDemo, openPanel, signIn } from './people.ts';
+import { drawing, expectSaved, ledgerRow, openDemo, openPanel, signIn } from './people.ts';
 
 test('two people edit at once: different things merge, the same thing asks', async ({
 	browser
@@ -19,7 +19,7 @@ test('two people edit at once: different things merge, the same thing asks', asy
 	const first = await offset(placerPage).inputValue();
 	await offset(placerPage).fill('1.25 mV');
 	await offset(placerPage).press('Enter');
-	await expect(placerPage.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(placerPage);
 	await ledgerRow(leadPage, 'mem_0_0').click();
 	await openPanel(leadPage, 'Properties');
 	await expect(offset(leadPage)).toHaveValue('1.25 mV');
@@ -31,11 +31,11 @@ test('two people edit at once: different things merge, the same thing asks', asy
 	await expect(leadPage.getByText(/Offline, 1 change waits/)).toBeVisible();
 	await offset(placerPage).fill('2 mV');
 	await offset(placerPage).press('Enter');
-	await expect(placerPage.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(placerPage);
 	await leadContext.setOffline(false);
 	const dialog = leadPage.getByRole('dialog');
-	await expect(dialog).toContainText('0.003');
-	await expect(dialog).toContainText('0.002');
+	await expect(dialog).toContainText('3 mV');
+	await expect(dialog).toContainText('2 mV');
 	await expect(dialog).toContainText('Mira Okonjo');
 	await dialog.getByRole('button', { name: 'Keep theirs' }).click();
 	await expect(dialog).toBeHidden();
@@ -43,7 +43,7 @@ test('two people edit at once: different things merge, the same thing asks', asy
 
 	await offset(placerPage).fill(first);
 	await offset(placerPage).press('Enter');
-	await expect(placerPage.getByText('✓ Saved')).toBeVisible();
+	await expectSaved(placerPage);
 	await expect(offset(leadPage)).toHaveValue(first);
 	await drawing(leadPage).focus();
 });
