@@ -4,36 +4,52 @@ import { beyond, nameOf, startingFrom, WALL } from './expressions.ts';
 import { safeIds } from './names.ts';
 import type { DeckStart } from './start.ts';
 
-/**
- * Slope of a unit's line in the first step, ohm: steep enough that rounding of voltages does not
- * move its current across a bound.
- */
-const START_OHM = 1000;
-
-/** A unit at a known operating point: v_in - v, and s against 0 V. */
-interface UnitAt {
-	readonly acrossV: number;
-	readonly setV: number;
-	/** Input against 0 V, or null where it is ideal. */
-	readonly inV: number | null;
-	readonly amps: number;
+/** The straight pieces of a unit's characteristic, each an expression of v_in - v over its current. */
+interface Pieces {
+	/** v_in - (s - Ro i). */
+	readonly regulating: string;
+	/** Ron i. */
+	readonly fullyOn: string;
+	/** Ron i with a wall below 0: the pass device never takes current back. */
+	readonly blocked: string;
+	/** Walls beyond maxA and below -sinkA. */
+	readonly limited: string;
+	readonly idle: string;
 }
 
-/**
- * The current at which the characteristic of the deck, steep walls included, has the voltage of an
- * operating point: a hair beyond the bound for a unit that stands on one.
- */
-function currentOnWalls(cell: Cell, ohm: number, { acrossV, setV, inV, amps }: UnitAt): number {
-	const within = (current: number) => {
-		const regulating = (inV ?? 0) - (setV - ohm * current);
-		return inV === null ? regulating : Math.max(regulating, cell.onOhm * Math.max(current, 0));
+function piecesOf(cell: Cell, current: string, regulating: string): Pieces {
+	return {
+		regulating,
+		fullyOn: `${cell.onOhm}*${current}`,
+		blocked: `${cell.onOhm}*${current}+${WALL}*${current}`,
+		limited: `+${WALL}*(${current}-${cell.maxA})`,
+		idle: `-${WALL}*(-${cell.sinkA}-${current})`
 	};
-	const beyondMaxV = acrossV - within(cell.maxA);
-	if (beyondMaxV > 0) return cell.maxA + beyondMaxV / WALL;
-	const isStarved = inV !== null && acrossV < 0 && inV - setV < acrossV;
-	if (isStarved) return acrossV / WALL;
-	const lowerV = (inV ?? 0) - (setV + ohm * cell.sinkA);
-	return acrossV < lowerV ? -cell.sinkA + (acrossV - lowerV) / WALL : amps;
+}
+
+/** The pieces on which a unit stands at a known operating point. */
+function startOf(
+	pieces: Pieces,
+	cell: Cell,
+	ohm: number,
+	at: {
+		readonly state: DeckStart['regulatorStates'][number];
+		readonly amps: number;
+		/** Set point and output against 0 V, and the input, or null where it is ideal. */
+		readonly setV: number;
+		readonly outV: number;
+		readonly inV: number | null;
+	}
+): string {
+	const { state, amps, setV, outV, inV } = at;
+	const isStarved = inV !== null && amps <= 0 && inV <= outV && setV > outV;
+	const isFullyOn =
+		inV !== null && !isStarved && amps > 0 && cell.onOhm * amps > inV - (setV - ohm * amps);
+	const within = isStarved ? pieces.blocked : isFullyOn ? pieces.fullyOn : pieces.regulating;
+	if (state === 'limited') return within + pieces.limited;
+	// A unit that may not sink and gets nothing stands on its lower bound too.
+	if (state === 'idle' || (isStarved && cell.sinkA === 0)) return within + pieces.idle;
+	return within;
 }
 
 /**
@@ -59,33 +75,6 @@ export function regulatorLines(
 	const cells = new Map(floorplan.cells.map((cell) => [cell.id, cell]));
 	const nets = new Map(floorplan.nets.map((net) => [net.id, net]));
 	const taps = network.regulators;
-
-	/**
-	 * A straight line through the unit's place at the start: all these lines together have the start
-	 * as their solution, whatever pieces the units stand on.
-	 */
-	function firstLine(
-		r: number,
-		cell: Cell,
-		ohm: number,
-		setV: number,
-		referenceNode: number
-	): string | null {
-		if (start === null) return null;
-		const at = (node: number) => (node < 0 ? 0 : start.voltage[node]);
-		const net = network.nodes.net[taps.outputNode[r]];
-		const loop = start.sense.find((candidate) => candidate.net === net);
-		const inV = floorplan.regulators[r].input === null ? null : at(taps.inputNode[r]);
-		const acrossV = (inV ?? 0) - at(taps.outputNode[r]);
-		const amps = currentOnWalls(cell, ohm, {
-			acrossV,
-			setV: setV + (loop?.correctionV ?? 0) + at(referenceNode),
-			inV,
-			amps: start.regulatorAmps[r]
-		});
-		return `(${acrossV})+${START_OHM}*(i(vr_${ids[r]})-(${amps}))`;
-	}
-
 	return floorplan.regulators.flatMap((unit, r) => {
 		const cell = cells.get(unit.cell);
 		const net = nets.get(unit.output);
@@ -107,14 +96,29 @@ export function regulatorLines(
 			...(referenceNode < 0 ? [] : [`v(${names[referenceNode]})`])
 		].join('+');
 		const inputVolts = unit.input === null ? '' : `v(${input})`;
-		const regulating = `${inputVolts}-(${level}-${ohm}*${current})`;
-		const fullyOn = `${cell.onOhm}*${current}-${beyond(`-${current}`)}`;
-		const within = unit.input === null ? regulating : `max(${regulating},${fullyOn})`;
+		const pieces = piecesOf(cell, current, `${inputVolts}-(${level}-${ohm}*${current})`);
+		const within =
+			unit.input === null
+				? pieces.regulating
+				: `max(${pieces.regulating},${pieces.fullyOn}-${beyond(`-${current}`)})`;
 		const bounds = `+${beyond(`${current}-${cell.maxA}`)}-${beyond(`-${cell.sinkA}-${current}`)}`;
+		const at = (node: number) => (start === null || node < 0 ? 0 : start.voltage[node]);
+		const correctionV =
+			start?.sense.find((loop) => network.nets[loop.net].id === net.id)?.correctionV ?? 0;
+		const startPiece =
+			start === null
+				? null
+				: startOf(pieces, cell, ohm, {
+						state: start.regulatorStates[r],
+						amps: start.regulatorAmps[r],
+						setV: setV + correctionV + at(referenceNode),
+						outV: at(taps.outputNode[r]),
+						inV: unit.input === null ? null : at(taps.inputNode[r])
+					});
 		const lines = [
 			`* regulator ${unit.id}, cell ${unit.cell}`,
 			`vr_${ids[r]} ${input} r_${ids[r]} 0`,
-			`br_${ids[r]} r_${ids[r]} ${output} v=${startingFrom(current, firstLine(r, cell, ohm, setV, referenceNode), within + bounds)}`
+			`br_${ids[r]} r_${ids[r]} ${output} v=${startingFrom(current, startPiece, within + bounds)}`
 		];
 		if (cell.quiescentA > 0) lines.push(`iq_${ids[r]} ${input} ${ground} ${cell.quiescentA}`);
 		return lines;

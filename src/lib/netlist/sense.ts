@@ -36,8 +36,10 @@ export function senseLines(
 		const error = `(${volts})-(${mean})`;
 		const law = `${error}-${beyond(`v(${u})-${rangeV}`)}+${beyond(`-${rangeV}-v(${u})`)}`;
 		const answer = start?.sense.find((candidate) => candidate.net === net);
-		const end = Math.sign(answer?.correctionV ?? 0) * rangeV;
-		const atEnd = answer?.state === 'at-range' ? `(${end + answer.errorV / WALL})-v(${u})` : null;
+		const atEnd =
+			answer?.state === 'at-range'
+				? `${error}-${WALL}*(v(${u})-(${Math.sign(answer.correctionV) * rangeV}))`
+				: null;
 		return [
 			`* shared slow loop of net ${id}: v(${u}) is added to every set point`,
 			`ru_${ids[net]} ${u} 0 ${CORRECTION_LEAK_OHM}`,
