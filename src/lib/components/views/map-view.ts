@@ -6,7 +6,7 @@ import {
 	type MapPlane,
 	type PreparedMap
 } from '#lib/editor/paint/index.ts';
-import type { DropMap } from '#lib/results/index.ts';
+import type { DropMap, RegulatorResult, ResultFile } from '#lib/results/index.ts';
 
 /** What the map shows: which rails, and which part of the drop. */
 export const MAP_QUANTITIES = [
@@ -76,4 +76,9 @@ export function preparePicture(
 			};
 		})
 	};
+}
+
+/** What a result says of each regulator, by id. */
+export function regulatorsById(result: ResultFile | null): ReadonlyMap<string, RegulatorResult> {
+	return new Map(result?.regulators.map((one) => [one.id, one]));
 }

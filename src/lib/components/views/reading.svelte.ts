@@ -2,8 +2,8 @@ import { createQuery, useQueryClient } from '@tanstack/svelte-query';
 import { isFinished, type ApiClient, type Job } from '#lib/contracts/index.ts';
 import { hashFloorplan } from '#lib/floorplan/index.ts';
 import type { EditorState } from '#lib/editor/editor-state.svelte.ts';
-import { decodeDropMap, type RegulatorResult, type ResultFile } from '#lib/results/index.ts';
-import { ALL_RAILS, netsOf, type NetMap } from './map-view.ts';
+import { decodeDropMap, type ResultFile } from '#lib/results/index.ts';
+import { ALL_RAILS, netsOf, regulatorsById, type NetMap } from './map-view.ts';
 
 /** Spots that carry a number on the map. */
 const MOST_SPOTS = 9;
@@ -107,9 +107,7 @@ export function followReading(
 		placeholderData: (before?: FetchedMaps) => (before?.view === view ? before : undefined)
 	}));
 	const shown = $derived(summary ? (result.data ?? null) : null);
-	const regulators = $derived(
-		new Map<string, RegulatorResult>(shown?.regulators.map((one) => [one.id, one]))
-	);
+	const regulators = $derived(regulatorsById(shown));
 	const spots = $derived(
 		(shown?.spots ?? [])
 			.filter((spot) => nets.includes(spot.net))
@@ -180,7 +178,7 @@ export function followReading(
 			return summary ? (maps.data?.maps ?? []) : [];
 		},
 		/** What the result says of each regulator, by id. */
-		get regulators(): ReadonlyMap<string, RegulatorResult> {
+		get regulators() {
 			return regulators;
 		},
 		/** The worst spots of the nets shown, in the order of their numbers. */

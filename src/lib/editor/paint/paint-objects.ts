@@ -33,11 +33,17 @@ const SLIP_PADDING_PX = 4;
 /** A name is cut short to no fewer letters than this. */
 const NAME_LEAST_LETTERS = 4;
 
-/** The name, or as much of its beginning as fits; null where that would say nothing. */
+/**
+ * The name, else what stands after its last point, else as much of that as fits; null where that
+ * would say nothing.
+ */
 function shortened(context: CanvasRenderingContext2D, name: string, roomPx: number): string | null {
-	if (context.measureText(name).width <= roomPx) return name;
-	for (let letters = name.length - 1; letters >= NAME_LEAST_LETTERS; letters--) {
-		const short = `${name.slice(0, letters)}…`;
+	const last = name.slice(name.lastIndexOf('.') + 1);
+	for (const whole of [name, last]) {
+		if (context.measureText(whole).width <= roomPx) return whole;
+	}
+	for (let letters = last.length - 1; letters >= NAME_LEAST_LETTERS; letters--) {
+		const short = `${last.slice(0, letters)}…`;
 		if (context.measureText(short).width <= roomPx) return short;
 	}
 	return null;

@@ -250,9 +250,9 @@ describe('painting the rest', () => {
 	});
 
 	it('a name that does not fit is cut short, and left out where too little is left', () => {
-		const texts = (widthUm: number) => {
+		const texts = (widthUm: number, name = 'instruction cache') => {
 			const { context, calls } = recordingContext();
-			const block = { ...plan.blocks[0], name: 'instruction cache' };
+			const block = { ...plan.blocks[0], name };
 			const box = { minX: 0, minY: 0, maxX: widthUm, maxY: 100 };
 			paintBlock({ context, camera, theme }, block, box, 'default');
 			return calls('fillText').map(({ values }) => values[0]);
@@ -260,6 +260,8 @@ describe('painting the rest', () => {
 		// Room for 58 px beside the padding: nine letters of 6 px and the sign of omission is one too many.
 		expect(texts(70)).toEqual(['instruct…']);
 		expect(texts(20)).toEqual([]);
+		// The end of a path tells more than its beginning.
+		expect(texts(70, 'memories.sram2')).toEqual(['sram2']);
 	});
 
 	it('bumps of an input are rings, of the ground discs', () => {

@@ -1,13 +1,7 @@
 import { database } from '#lib/server/db/client.ts';
-import { loading, requireActor } from '#lib/server/guard.ts';
-import { getFloorplan } from '#lib/server/services/floorplans.ts';
+import { requireActor } from '#lib/server/guard.ts';
 import { getSignedIn } from '#lib/server/services/team.ts';
 import type { PageServerLoad } from './$types';
 
-export const load: PageServerLoad = (event) => {
-	const actor = requireActor(event);
-	return loading(async () => ({
-		...(await getSignedIn(database(), actor)),
-		floorplan: await getFloorplan(database(), actor, event.params.floorplanId)
-	}));
-};
+/** Only who is signed in; what they may see of the floorplan the API decides. */
+export const load: PageServerLoad = (event) => getSignedIn(database(), requireActor(event));
