@@ -96,7 +96,11 @@ export default {
 		plugin(({ addBase }) => {
 			addBase({
 				':root': { 'color-scheme': 'light', ...properties(light) },
-				':root[data-theme="dark"]': { 'color-scheme': 'dark', ...properties(dark) }
+				':root[data-theme="dark"]': { 'color-scheme': 'dark', ...properties(dark) },
+				// Paper is light, whatever the screen was.
+				'@media print': {
+					':root[data-theme="dark"]': { 'color-scheme': 'light', ...properties(light) }
+				}
 			});
 		})
 	]
