@@ -20,11 +20,11 @@ test('a placer moves a regulator, solves, and reads the answer', async ({ page }
 
 	// Select in the ledger, move by keys in the drawing.
 	await ledgerRow(page, 'core_0_3').click();
-	await drawing(page).focus();
-	await expect(page.locator('#die-canvas-state')).toHaveText(/core_0_3/);
 	await openPanel(page, 'Properties');
 	const x = page.getByRole('textbox', { name: 'x', exact: true });
 	const before = await x.inputValue();
+	await drawing(page).focus();
+	await expect(page.locator('#die-canvas-state')).toHaveText(/core_0_3/);
 	await page.keyboard.press('ArrowRight');
 	await page.keyboard.press('ArrowRight');
 	await expect(x).not.toHaveValue(before);
