@@ -122,6 +122,8 @@ describe('services', () => {
 	const OWN: Readonly<Record<string, string>> = {
 		listProjects: 'lists what the actor is a member of',
 		getSignedIn: 'reads the actor',
+		signOut: 'ends a session of the actor',
+		signOutEverywhere: 'ends sessions of the actor',
 		changePassword: 'asks for the password of the actor',
 		insertFloorplan: 'called by createFloorplan and the demo',
 		addDemoFloorplan: 'asks through createFloorplan',

@@ -410,6 +410,19 @@ describe('asking for solves', () => {
 		expect(await queueEntries()).toHaveLength(1);
 	});
 
+	it('is refused to a team that has too many unfinished jobs', async () => {
+		const { actor } = world.members.placer;
+		await connection.sql`
+			insert into jobs (kind, input, dedupe_key, team_id, requested_by)
+			select 'test', '{}', 'many:' || i, ${world.teamId}, ${actor.userId}
+			from generate_series(1, 255) as i`;
+		// Two modes: one too many.
+		await expect(
+			requestSolves(connection.db, actor, world.floorplanId, {})
+		).rejects.toMatchObject({ kind: 'too-many', options: { retryAfterSeconds: 30 } });
+		await requestSolves(connection.db, actor, world.floorplanId, { mode: 'default' });
+	});
+
 	it('keeps the document of the request, however the draft goes on', async () => {
 		const { actor } = world.members.placer;
 		const { documentHash } = await requestSolves(connection.db, actor, world.floorplanId, {});

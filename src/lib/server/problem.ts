@@ -8,7 +8,7 @@ const KINDS = {
 	conflict: { status: 409, title: 'Somebody else was faster' },
 	'too-large': { status: 413, title: 'Too large' },
 	invalid: { status: 422, title: 'Something in the request is not right' },
-	'too-many': { status: 429, title: 'Too many tries' },
+	'too-many': { status: 429, title: 'Too many at once' },
 	unavailable: { status: 503, title: 'Not available at the moment' }
 } as const;
 

@@ -1,5 +1,5 @@
 import type { Handle, HandleServerError } from '@sveltejs/kit';
-import { log } from '../log.ts';
+import { codeOf, log } from '../log.ts';
 import { Problem, problemResponse } from '../problem.ts';
 
 /** Postgres is not there, shuts down, or has no room: the request may work in a while. */
@@ -8,19 +8,6 @@ const AWAY =
 /** It is there, but the wait for a lock or the statement took too long. */
 const BUSY = /^(55P03|57014)$/;
 const RETRY_AFTER_SECONDS = 5;
-
-function codeOf(error: unknown): string {
-	if (typeof error !== 'object' || error === null) return '';
-	if ('code' in error && typeof error.code === 'string') return error.code;
-	return 'cause' in error ? codeOf(error.cause) : '';
-}
-
-/** What of an error may be logged: never the values of a query. */
-export function loggable(error: unknown): Record<string, unknown> {
-	if (!(error instanceof Error)) return { message: String(error) };
-	const cause = error.cause instanceof Error ? error.cause : error;
-	return { name: cause.name, code: codeOf(error), message: cause.message, stack: cause.stack };
-}
 
 /** An expected problem, or that the database is away; anything else is a fault of ours. */
 export function asProblem(error: unknown): Problem | null {
@@ -69,7 +56,7 @@ export const apiProblems: Handle = async ({ event, resolve }) => {
 export const handleError: HandleServerError = ({ error, event, status, message }) => {
 	const { requestId } = event.locals;
 	if (status >= 500) {
-		log.error({ requestId, route: event.route.id, error: loggable(error) }, 'request failed');
+		log.error({ requestId, route: event.route.id, error }, 'request failed');
 	}
 	const problem = asProblem(error);
 	return {

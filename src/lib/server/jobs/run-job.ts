@@ -3,7 +3,7 @@ import { jobFailureSchema, type JobFailure, type JobState } from '#lib/contracts
 import type { Database, Handle } from '../db/client.ts';
 import { jobs } from '../db/schema/index.ts';
 import { publish } from '../events/publish.ts';
-import { log } from '../log.ts';
+import { log, loggable } from '../log.ts';
 import { addToQueue } from './enqueue.ts';
 import { CANCELLED, JobRefused, STOPPING, type JobKind } from './job-kind.ts';
 import { UNFINISHED, type JobRow } from './job-rows.ts';
@@ -147,7 +147,8 @@ export async function runJob(
 			return;
 		}
 		await endAttempt(db, job, 'queued');
-		throw error;
+		// The queue keeps and logs the text: without the values of a query.
+		throw new Error(String(loggable(error).message), { cause: error });
 	} finally {
 		progress.stop();
 	}

@@ -73,7 +73,7 @@ export class SolveRunner {
 		});
 		thread.unref();
 		// Whatever happens to a thread that nobody waits for, the next solve starts another.
-		thread.on('error', (error) => log.warn({ error: error.message }, 'the solve thread died'));
+		thread.on('error', (error) => log.warn({ error }, 'the solve thread died'));
 		thread.on('exit', () => this.#forget(thread));
 		return thread;
 	}

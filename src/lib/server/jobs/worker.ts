@@ -102,7 +102,12 @@ async function joinQueue(
 		taskList,
 		events
 	});
-	await presence.enter(await queueId);
+	try {
+		await presence.enter(await queueId);
+	} catch (error) {
+		await runner.stop();
+		throw error;
+	}
 	return runner;
 }
 

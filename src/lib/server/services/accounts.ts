@@ -4,7 +4,7 @@ import type { changePasswordSchema, signInSchema, signUpSchema } from '#lib/cont
 import { audit, type Actor } from '../audit.ts';
 import { checkPassword, hashPassword, passwordProblem } from '../auth/password.ts';
 import { countSignIn, countTry, forgetTries, noteSignIn } from '../auth/rate-limit.ts';
-import { beginSession, endAllSessions } from '../auth/session.ts';
+import { beginSession, endAllSessions, endSession } from '../auth/session.ts';
 import type { Database } from '../db/client.ts';
 import { teams, users } from '../db/schema/index.ts';
 import { log } from '../log.ts';
@@ -127,4 +127,27 @@ export async function changePassword(
 		subject: 'Your Manyweir password was changed',
 		text: 'Your password was changed and all other browsers were signed out. If this was not you, ask the admin of your team at once.'
 	}).catch((error: unknown) => log.error({ error }, 'mail about a changed password not sent'));
+}
+
+/** Ends the session of this browser. */
+export async function signOut(db: Database, actor: Actor, sessionId: string): Promise<void> {
+	await endSession(db, sessionId);
+	await auditSessions(db, actor, 'session.end');
+}
+
+/** Ends every session of whoever asks, this one included. */
+export async function signOutEverywhere(db: Database, actor: Actor): Promise<void> {
+	await endAllSessions(db, actor.userId);
+	await auditSessions(db, actor, 'session.end-all');
+}
+
+function auditSessions(db: Database, actor: Actor, action: string): Promise<void> {
+	return audit(db, {
+		teamId: actor.teamId,
+		userId: actor.userId,
+		requestId: actor.requestId,
+		action,
+		objectKind: 'user',
+		objectId: actor.userId
+	});
 }

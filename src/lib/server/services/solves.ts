@@ -1,4 +1,4 @@
-import { and, eq, inArray, sql } from 'drizzle-orm';
+import { and, count, eq, inArray, sql } from 'drizzle-orm';
 import type { z } from 'zod';
 import type { Job, requestSolvesSchema, Solves } from '#lib/contracts/index.ts';
 import type { ResultFile } from '#lib/results/index.ts';
@@ -6,15 +6,18 @@ import { SOLVER_VERSION } from '#lib/solver/index.ts';
 import { requireAccess } from '../access/access.ts';
 import { audit, type Actor } from '../audit.ts';
 import type { Database, Handle } from '../db/client.ts';
-import { documents, floorplans, resultMaps, results } from '../db/schema/index.ts';
+import { documents, floorplans, jobs, resultMaps, results } from '../db/schema/index.ts';
 import { cancelJob, cancelSuperseded } from '../jobs/cancel.ts';
 import { enqueue } from '../jobs/enqueue.ts';
-import { findJob, listJobs } from '../jobs/job-rows.ts';
+import { findJob, listJobs, UNFINISHED } from '../jobs/job-rows.ts';
 import { SOLVE_KIND, solveDedupeKey } from '../jobs/solve-kind.ts';
 import { Problem } from '../problem.ts';
 
 /** Modes and corners that one request may ask for. */
 const MAX_COMBINATIONS = 64;
+/** Unfinished jobs that one team may have. */
+const MAX_UNFINISHED = 256;
+const RETRY_SECONDS = 30;
 
 /**
  * Kept results and jobs of a floorplan. Of each mode and corner the result of the present document
@@ -92,6 +95,7 @@ export async function requestSolves(
 			({ mode, corner }) => !kept.some((one) => one.mode === mode && one.corner === corner)
 		);
 		if (missing.length > 0) {
+			await requireRoom(tx, actor.teamId, missing.length);
 			await tx.insert(documents).values({ projectId, hash, document }).onConflictDoNothing();
 		}
 		for (const { mode, corner } of missing) {
@@ -117,6 +121,20 @@ export async function requestSolves(
 		}
 	});
 	return getSolves(db, actor, id);
+}
+
+/** Refuses more work of a team than can be looked through. */
+async function requireRoom(db: Handle, teamId: string, more: number): Promise<void> {
+	const [{ unfinished }] = await db
+		.select({ unfinished: count() })
+		.from(jobs)
+		.where(and(eq(jobs.teamId, teamId), inArray(jobs.state, UNFINISHED)));
+	if (unfinished + more <= MAX_UNFINISHED) return;
+	throw new Problem(
+		'too-many',
+		`Your team has ${unfinished} unfinished jobs (at most ${MAX_UNFINISHED}). Wait until some are done, or cancel some.`,
+		{ retryAfterSeconds: RETRY_SECONDS }
+	);
 }
 
 function pick(what: string, list: readonly { id: string }[], wanted?: string): string[] {

@@ -2,11 +2,11 @@ import { fail, message, setError, superValidate } from 'sveltekit-superforms';
 import { zod4 } from 'sveltekit-superforms/adapters';
 import { redirect } from '@sveltejs/kit';
 import { changePasswordSchema } from '#lib/contracts/index.ts';
-import { endAllSessions, listSessions } from '#lib/server/auth/session.ts';
+import { listSessions } from '#lib/server/auth/session.ts';
 import { database } from '#lib/server/db/client.ts';
 import { endCookie, problemOf } from '#lib/server/forms.ts';
 import { requireActor } from '#lib/server/guard.ts';
-import { changePassword } from '#lib/server/services/accounts.ts';
+import { changePassword, signOutEverywhere } from '#lib/server/services/accounts.ts';
 import type { Actions, PageServerLoad } from './$types';
 
 export const load: PageServerLoad = async (event) => {
@@ -38,8 +38,7 @@ export const actions: Actions = {
 		return message(form, 'The password was changed; every other browser is signed out.');
 	},
 	everywhere: async (event) => {
-		const { userId } = requireActor(event);
-		await endAllSessions(database(), userId);
+		await signOutEverywhere(database(), requireActor(event));
 		endCookie(event);
 		redirect(303, '/sign-in');
 	}
