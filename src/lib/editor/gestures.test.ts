@@ -108,6 +108,13 @@ describe('a marquee', () => {
 		expect(driver.state).toBe('select.idle');
 	});
 
+	it('nothing stays marked as under the pointer while a hand draws or drags', () => {
+		const driver = open().press(450, 550);
+		expect(driver.editor.hovered).toBe('blocks:cpu');
+		driver.move(300, 300);
+		expect(driver.editor.hovered).toBeNull();
+	});
+
 	it('may begin on a block that is not selected', () => {
 		const driver = open();
 		const { hash } = driver;

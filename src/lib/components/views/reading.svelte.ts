@@ -118,9 +118,7 @@ export function followReading(
 	// One after the other, so that nothing that is looked at waits for it.
 	const ahead = $derived(
 		shown && maps.data
-			? (solves.data?.results ?? []).filter(
-					(one) => one.documentHash === hash && (one.mode === mode || one.corner === corner)
-				)
+			? (solves.data?.results ?? []).filter((one) => one.mode === mode || one.corner === corner)
 			: []
 	);
 	$effect(() => {

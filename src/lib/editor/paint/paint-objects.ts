@@ -342,19 +342,24 @@ export function paintMarked(
 	isSelected: boolean
 ): void {
 	const [left, top, width, height] = screenRect(camera, bounds);
+	const radius = feedRadiusPx(camera);
+	const isPoint = width === 0 && height === 0;
 	context.beginPath();
-	if (width === 0 && height === 0) {
-		context.arc(left, top, feedRadiusPx(camera) + 4, 0, 2 * Math.PI);
+	if (isPoint) {
+		context.arc(left, top, radius + 2.5, 0, 2 * Math.PI);
 	} else {
 		const growX = Math.max(3, (MARK_LEAST_PX - width) / 2);
 		const growY = Math.max(3, (MARK_LEAST_PX - height) / 2);
 		context.rect(left - growX, top - growY, width + 2 * growX, height + 2 * growY);
 	}
+	// Thinner around what is small, so that many marks do not run into each other.
+	const isSmall = isPoint ? radius < 4 : Math.max(width, height) < 12;
+	const lineWidth = isSelected ? (isSmall ? 1.4 : 2.25) : 1;
 	context.strokeStyle = theme.paper;
-	context.lineWidth = isSelected ? 4.5 : 3;
+	context.lineWidth = lineWidth + (isSmall ? 1.4 : 2.25);
 	context.stroke();
 	context.strokeStyle = theme.ink;
-	context.lineWidth = isSelected ? 2.25 : 1;
+	context.lineWidth = lineWidth;
 	context.stroke();
 }
 

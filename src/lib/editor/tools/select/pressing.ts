@@ -22,6 +22,7 @@ export function pressing(
 	const isArea = item?.list === 'blocks' || item?.list === 'keepouts';
 
 	function beginDrag(): void {
+		host.hovered = null;
 		if (!item || start.isAdding || (isArea && !wasSelected)) return go.marquee(start);
 		if (!host.canMove(item)) {
 			host.refuse(`${item.id} is fixed, or not yours to move.`);
