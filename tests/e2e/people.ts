@@ -37,9 +37,9 @@ export async function expectSaved(page: Page): Promise<void> {
 	).toBeVisible();
 }
 
-/** Shown over the drawing while map and figures are of an earlier plan. */
+/** Shown over the ledger while its figures, and the map, are of an earlier plan. */
 export function outOfDate(page: Page) {
-	return page.getByText('map and figures are of an earlier plan');
+	return page.getByText('figures of an earlier plan');
 }
 
 export function drawing(page: Page) {
