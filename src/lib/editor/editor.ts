@@ -10,18 +10,14 @@ import {
 	type Operation,
 	type PlacedList
 } from '#lib/floorplan/edits/index.ts';
-import {
-	buildPlacementIndex,
-	checkPlacement,
-	type PlacementIndex,
-	type PlacementReason
-} from '#lib/floorplan/legality/index.ts';
+import type { PlacementReason } from '#lib/floorplan/legality/index.ts';
 import { beside, fit, panBy, viewOf, zoomAt, type Camera } from './camera.ts';
 import { explainFailure } from './explain.ts';
 import { History, type StepOffer } from './history.ts';
 import type { PointerInput } from './input.ts';
 import { NudgeBurst, type Schedule } from './nudge-burst.ts';
 import type { Overlay } from './overlay.ts';
+import { PlacementJudge } from './placement-judge.ts';
 import type { ScreenPoint } from './points.ts';
 import { SceneIndex } from './scene-index.ts';
 import { keyOf, referenceOf, type ItemKey } from './selection.ts';
@@ -65,8 +61,7 @@ export class Editor implements ToolHost {
 	#floorplan: Floorplan;
 	#keeper: DocumentKeeper;
 	#scene: SceneIndex;
-	#placements: PlacementIndex | null = null;
-	#problems: ReadonlyMap<string, PlacementReason[]> | null = null;
+	#judge: PlacementJudge;
 	#listeners = new Set<Listener>();
 	#state: ToolState;
 	#history = new History();
@@ -97,6 +92,7 @@ export class Editor implements ToolHost {
 		this.#floorplan = floorplan;
 		this.#keeper = keeper;
 		this.#scene = new SceneIndex(floorplan);
+		this.#judge = new PlacementJudge(floorplan);
 		this.canDraw = canDraw;
 		this.canEditLoads = options.canEditLoads ?? canDraw;
 		this.#schedule = options.schedule ?? (() => () => {});
@@ -128,20 +124,9 @@ export class Editor implements ToolHost {
 		return [...this.selection].map(referenceOf);
 	}
 
-	/** Footprints of the present document, for questions of legality. */
-	get placements(): PlacementIndex {
-		this.#placements ??= buildPlacementIndex(this.#floorplan);
-		return this.#placements;
-	}
-
 	/** Reasons against the regulators that stand illegally, by id, in document order. */
 	get problems(): ReadonlyMap<string, readonly PlacementReason[]> {
-		this.#problems ??= new Map(
-			this.#floorplan.regulators
-				.map((regulator) => [regulator.id, this.reasonsAgainst(regulator)] as const)
-				.filter(([, reasons]) => reasons.length > 0)
-		);
-		return this.#problems;
+		return this.#judge.problems;
 	}
 
 	subscribe(listener: Listener): () => void {
@@ -158,8 +143,7 @@ export class Editor implements ToolHost {
 		if (floorplan === this.#floorplan) return;
 		this.#floorplan = floorplan;
 		this.#scene = new SceneIndex(floorplan);
-		this.#placements = null;
-		this.#problems = null;
+		this.#judge = new PlacementJudge(floorplan);
 		const kept = [...this.selection].filter((key) => this.#exists(key));
 		if (kept.length < this.selection.size) this.selection = new Set(kept);
 		if (this.hovered && !this.#exists(this.hovered)) this.hovered = null;
@@ -275,7 +259,7 @@ export class Editor implements ToolHost {
 	}
 
 	reasonsAgainst(regulator: Regulator): PlacementReason[] {
-		return checkPlacement(this.placements, regulator);
+		return this.#judge.reasonsAgainst(regulator);
 	}
 
 	neighbours(except: readonly ItemReference[]): Bounds[] {
@@ -292,17 +276,7 @@ export class Editor implements ToolHost {
 		dxUm: number,
 		dyUm: number
 	): Map<string, PlacementReason[]> {
-		const moving = new Set(
-			references.filter(({ list }) => list === 'regulators').map(({ id }) => id)
-		);
-		const reasons = new Map<string, PlacementReason[]>();
-		for (const regulator of this.#floorplan.regulators) {
-			if (!moving.has(regulator.id)) continue;
-			const moved = { ...regulator, xUm: regulator.xUm + dxUm, yUm: regulator.yUm + dyUm };
-			const found = checkPlacement(this.placements, moved, moving);
-			if (found.length > 0) reasons.set(regulator.id, found);
-		}
-		return reasons;
+		return this.#judge.reasonsAfterMove(references, dxUm, dyUm);
 	}
 
 	// Tools.

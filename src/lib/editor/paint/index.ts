@@ -8,16 +8,7 @@ export { strapLines } from './strap-lines.ts';
 export { paintSheet, paintStraps, traceOutline } from './paint-base.ts';
 export type { PreparedMap } from './paint-map.ts';
 export { paintMaps } from './paint-map.ts';
-export type { PaintContext, RegulatorPicture } from './paint-objects.ts';
-export {
-	cellsById,
-	paintBlock,
-	paintFeed,
-	paintKeepout,
-	paintMarked,
-	paintRegulator,
-	paintSpot
-} from './paint-objects.ts';
+export type { PaintContext } from './paint-context.ts';
 export type { OverlayPicture } from './paint-overlay.ts';
 export { paintOverlay } from './paint-overlay.ts';
 export type { Scene } from './paint-scene.ts';

@@ -5,7 +5,9 @@ import type { DragPreview, Ghost, Overlay } from '../overlay.ts';
 import { diePoint, type DiePoint } from '../points.ts';
 import { referenceOf, type ItemKey } from '../selection.ts';
 import type { Guide } from '../snapping.ts';
-import { cellsById, paintMarked, paintRegulator, type PaintContext } from './paint-objects.ts';
+import { cellsById, type PaintContext } from './paint-context.ts';
+import { paintMarked } from './paint-marks.ts';
+import { paintRegulator } from './paint-regulator.ts';
 import { pictureOf } from './paint-scene.ts';
 
 export interface OverlayPicture {

@@ -4,16 +4,10 @@ import type { PlacedList } from '#lib/floorplan/edits/index.ts';
 import { footprintOf } from '#lib/floorplan/legality/index.ts';
 import type { RegulatorResult, Spot } from '#lib/results/index.ts';
 import type { Visibility } from '../visibility.ts';
-import {
-	cellsById,
-	paintBlock,
-	paintFeed,
-	paintKeepout,
-	paintRegulator,
-	paintSpot,
-	type PaintContext,
-	type RegulatorPicture
-} from './paint-objects.ts';
+import { cellsById, type PaintContext } from './paint-context.ts';
+import { paintSpot } from './paint-marks.ts';
+import { paintBlock, paintFeed, paintKeepout } from './paint-objects.ts';
+import { paintRegulator, type RegulatorPicture } from './paint-regulator.ts';
 
 export interface Scene {
 	readonly floorplan: Floorplan;
