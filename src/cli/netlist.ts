@@ -47,7 +47,7 @@ async function netlist(): Promise<number> {
 	const meshed = meshFloorplan(floorplan);
 	if (meshed.status === 'refused') return failWith(problemLines(meshed.problems));
 	const { mode, corner } = conditions;
-	// The deck starts a simulator at the answer where there is one; it states the network either way.
+	// A small deck starts a simulator at the answer, if there is one; it states the network either way.
 	const outcome = solveOperatingPoint(floorplan, meshed.network, {
 		mode: mode.id,
 		corner: corner.id,

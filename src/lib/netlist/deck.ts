@@ -4,6 +4,7 @@ import { loadLines } from './loads.ts';
 import { nodeNames, safeIds } from './names.ts';
 import { regulatorLines } from './regulators.ts';
 import { senseLines } from './sense.ts';
+import { SMALL_NETWORK_NODES } from './size.ts';
 import type { DeckStart } from './start.ts';
 
 export type DeckResult =
@@ -90,7 +91,8 @@ function headLines(floorplan: Floorplan, mode: Mode, corner: Corner): string[] {
 
 /**
  * The network in one mode and corner as an open SPICE-syntax deck that a general simulator runs
- * unchanged in batch mode. Refused where the corner has no resistances (see `resistancesAt`).
+ * unchanged in batch mode. A small network starts from `start` where it is given. Refused where the
+ * corner has no resistances (see `resistancesAt`).
  */
 export function writeDeck(
 	floorplan: Floorplan,
@@ -98,11 +100,12 @@ export function writeDeck(
 	{
 		mode,
 		corner,
-		start = null
+		start: known = null
 	}: { readonly mode: Mode; readonly corner: Corner; readonly start?: DeckStart | null }
 ): DeckResult {
 	const scaled = resistancesAt(network, floorplan, corner);
 	if (scaled.status === 'refused') return scaled;
+	const start = network.nodes.count <= SMALL_NETWORK_NODES ? known : null;
 	const { names, comments } = nodeNames(floorplan, network);
 	const loops = senseLines(floorplan, network, names, start);
 	const sections = [

@@ -1,18 +1,11 @@
 import type { Corner, Floorplan, Mode } from '#lib/floorplan/index.ts';
 import type { Network } from '#lib/mesh/index.ts';
 import { nameOf, startingFrom, voltageOf } from './expressions.ts';
+import { SMALL_NETWORK_NODES } from './size.ts';
 import type { DeckStart } from './start.ts';
 
 /** Below this fraction of nominal a load's law is continued linearly to zero (model section 4.3). */
 const COLLAPSE_FRACTION = 0.1;
-
-/**
- * Nodes up to which constant-current loads carry their law below a tenth of nominal. Such a load
- * follows the voltage between its rail and its ground, which couples two grids at every load: on a
- * large network a general simulator's factor then grows from seconds to hours, for a law that
- * applies only to blocks that have collapsed.
- */
-export const MAX_NODES_WITH_COLLAPSE = 5000;
 
 /** The current over its nominal as an expression of x = v / volts (model section 4.3). */
 function lawOf(x: string, exponent: number): string {
@@ -36,7 +29,7 @@ export function loadLines(
 	start: DeckStart | null
 ): string[] {
 	const { loads, nets, nodes } = network;
-	const hasCollapse = nodes.count <= MAX_NODES_WITH_COLLAPSE;
+	const hasCollapse = nodes.count <= SMALL_NETWORK_NODES;
 	const lines = hasCollapse
 		? []
 		: ['* Constant currents are drawn as such also below a tenth of nominal volts.'];
