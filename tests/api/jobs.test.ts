@@ -417,9 +417,10 @@ describe('asking for solves', () => {
 			select 'test', '{}', 'many:' || i, ${world.teamId}, ${actor.userId}
 			from generate_series(1, 255) as i`;
 		// Two modes: one too many.
-		await expect(
-			requestSolves(connection.db, actor, world.floorplanId, {})
-		).rejects.toMatchObject({ kind: 'too-many', options: { retryAfterSeconds: 30 } });
+		await expect(requestSolves(connection.db, actor, world.floorplanId, {})).rejects.toMatchObject({
+			kind: 'too-many',
+			options: { retryAfterSeconds: 30 }
+		});
 		await requestSolves(connection.db, actor, world.floorplanId, { mode: 'default' });
 	});
 

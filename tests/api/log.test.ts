@@ -38,7 +38,10 @@ it('keeps the values of a failed query out of the log', async () => {
 	expect(String(error)).toContain(secret);
 	const entry = loggable(error);
 	expect(JSON.stringify(entry)).not.toContain(secret);
-	expect(entry).toMatchObject({ code: '23505', message: expect.stringContaining('users_email_key') });
+	expect(entry).toMatchObject({
+		code: '23505',
+		message: expect.stringContaining('users_email_key')
+	});
 	expect(codeOf(error)).toBe('23505');
 });
 
