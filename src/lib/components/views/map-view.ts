@@ -82,3 +82,8 @@ export function preparePicture(
 export function regulatorsById(result: ResultFile | null): ReadonlyMap<string, RegulatorResult> {
 	return new Map(result?.regulators.map((one) => [one.id, one]));
 }
+
+/** A net, mode or corner as a choice of a list. */
+export function optionOf({ id, name }: { readonly id: string; readonly name?: string }) {
+	return { value: id, label: name ?? id };
+}
