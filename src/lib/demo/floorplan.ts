@@ -31,27 +31,27 @@ function rectangle({ minX, minY, maxX, maxY }: Bounds): PointUm[] {
 }
 
 /** Rails on Metal4 and Metal5, their ground between them; input and ground side by side on top. */
-function demoStraps(): FloorplanInput['straps'] {
+function demoStraps(pitchScale: number): FloorplanInput['straps'] {
 	const rails = domains.flatMap((domain) =>
 		(['Metal4', 'Metal5'] as const).map((layer) => ({
 			id: `${domain.net}.${layer}`,
 			net: domain.net,
 			layer,
-			pitchUm: RAIL_PITCH_UM,
+			pitchUm: RAIL_PITCH_UM * pitchScale,
 			widthUm: layer === 'Metal4' ? 14 : 12,
 			offsetUm: 15,
 			region: rectangle(domain.area)
 		}))
 	);
 	const ground = [
-		{ layer: 'Metal4', pitchUm: RAIL_PITCH_UM, widthUm: 14, offsetUm: 45 },
-		{ layer: 'Metal5', pitchUm: RAIL_PITCH_UM, widthUm: 12, offsetUm: 45 },
-		{ layer: 'TopMetal1', pitchUm: TOP_PITCH_UM, widthUm: 24, offsetUm: 90 },
-		{ layer: 'TopMetal2', pitchUm: TOP_PITCH_UM, widthUm: 28, offsetUm: 90 }
+		{ layer: 'Metal4', pitchUm: RAIL_PITCH_UM * pitchScale, widthUm: 14, offsetUm: 45 },
+		{ layer: 'Metal5', pitchUm: RAIL_PITCH_UM * pitchScale, widthUm: 12, offsetUm: 45 },
+		{ layer: 'TopMetal1', pitchUm: TOP_PITCH_UM * pitchScale, widthUm: 24, offsetUm: 90 },
+		{ layer: 'TopMetal2', pitchUm: TOP_PITCH_UM * pitchScale, widthUm: 28, offsetUm: 90 }
 	].map((strap) => ({ id: `gnd.${strap.layer}`, net: 'gnd', ...strap }));
 	const input = [
-		{ layer: 'TopMetal1', pitchUm: TOP_PITCH_UM, widthUm: 24, offsetUm: 30 },
-		{ layer: 'TopMetal2', pitchUm: TOP_PITCH_UM, widthUm: 28, offsetUm: 30 }
+		{ layer: 'TopMetal1', pitchUm: TOP_PITCH_UM * pitchScale, widthUm: 24, offsetUm: 30 },
+		{ layer: 'TopMetal2', pitchUm: TOP_PITCH_UM * pitchScale, widthUm: 28, offsetUm: 30 }
 	].map((strap) => ({ id: `vin.${strap.layer}`, net: 'vin', ...strap }));
 	return [...rails, ...ground, ...input];
 }
@@ -60,8 +60,10 @@ function demoStraps(): FloorplanInput['straps'] {
  * An invented die of 6 mm x 5 mm: three regulated rails, 24 blocks, 96 regulators of two cells,
  * four modes, three corners, on the published stack of an open process kit. The same seed gives
  * the same plan, to the last digit.
+ *
+ * @param pitchScale widens the pitch of all straps, for a plan with fewer nodes
  */
-export function makeDemoFloorplan(seed: number = DEMO_SEED): Floorplan {
+export function makeDemoFloorplan(seed: number = DEMO_SEED, pitchScale = 1): Floorplan {
 	const random = seededRandom(seed);
 	const input: FloorplanInput = {
 		format: 'manyweir-floorplan',
@@ -94,7 +96,7 @@ export function makeDemoFloorplan(seed: number = DEMO_SEED): Floorplan {
 			})),
 			{ id: 'gnd', name: 'Ground', kind: 'ground', volts: 0 }
 		],
-		straps: demoStraps(),
+		straps: demoStraps(pitchScale),
 		feeds: dieFeeds(DIE_WIDTH_UM, DIE_HEIGHT_UM),
 		cells: demoCells,
 		regulators: domains.flatMap((domain) => domainRegulators(domain, random)),
