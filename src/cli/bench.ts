@@ -9,7 +9,7 @@ import {
 	analyse,
 	assembleLaplacian,
 	factorise,
-	levelCoordinates,
+	orderMinimumDegree,
 	orderNestedDissection,
 	planAssembly,
 	relativeResidual,
@@ -28,14 +28,23 @@ import { EXIT_SOLVED, failWith, problemLines, runCommand } from './plan-input.ts
 
 const USAGE =
 	'bench -- [--nodes N] [--case uniform|irregular|strong] [--json] [--dump A.mtx b.mtx xy.mtx] | --matrix A.mtx --rhs b.mtx [--coords xy.mtx] [--out x.mtx]';
-const METHOD = 'multifrontal Cholesky on nested dissection, plain typed arrays';
+/** Name of the method by its elimination order. */
+const METHODS = {
+	dissection: 'multifrontal Cholesky on nested dissection, plain typed arrays',
+	degree: 'multifrontal Cholesky on minimum degree, plain typed arrays'
+} as const;
 const DEFAULT_NODES = 1_000_000;
+
+/** Coordinates of the unknowns. */
+interface Places {
+	readonly x: ArrayLike<number>;
+	readonly y: ArrayLike<number>;
+}
 
 interface System {
 	readonly matrix: SymmetricMatrix;
 	readonly b: Float64Array;
-	readonly x: ArrayLike<number>;
-	readonly y: ArrayLike<number>;
+	readonly places: Places | null;
 	readonly buildSeconds: number;
 }
 
@@ -43,8 +52,12 @@ function seconds(): number {
 	return performance.now() / 1000;
 }
 
+function megabytes(bytes: number): string {
+	return `${Math.ceil(bytes / 2 ** 20)} MB`;
+}
+
 /** The linear system of a bench plan: conductances of the grid, regulators tied to their set points. */
-function systemOfPlan(nodes: number, kind: BenchCase): System {
+function systemOfPlan(nodes: number, kind: BenchCase): System & { readonly places: Places } {
 	const floorplan = makeBenchPlan(nodes, kind);
 	const begin = seconds();
 	const meshed = meshFloorplan(floorplan);
@@ -66,7 +79,23 @@ function systemOfPlan(nodes: number, kind: BenchCase): System {
 		b[loads.node[k]] += loads.share[k] * (floorplan.blocks[loads.block[k]].amps.run ?? 0);
 	}
 	const { xNm, yNm } = network.nodes;
-	return { matrix, b, x: xNm, y: yNm, buildSeconds: seconds() - begin };
+	return { matrix, b, places: { x: xNm, y: yNm }, buildSeconds: seconds() - begin };
+}
+
+/** The system of a bench plan, written to Matrix Market files where their names are given. */
+async function systemOfCase(
+	nodes: number,
+	kind: BenchCase,
+	matrixPath: string | undefined,
+	[rhsPath, coordsPath]: readonly string[]
+): Promise<System> {
+	const system = systemOfPlan(nodes, kind);
+	if (matrixPath !== undefined) {
+		await writeMatrix(matrixPath, system.matrix);
+		await writeColumns(rhsPath, [system.b]);
+		await writeColumns(coordsPath, [system.places.x, system.places.y]);
+	}
+	return system;
 }
 
 async function systemOfFiles(
@@ -79,30 +108,29 @@ async function systemOfFiles(
 	if (b.length !== matrix.n) {
 		throw new MatrixFileError(`${rhsPath}: ${b.length} values (expected ${matrix.n})`);
 	}
-	if (!coordsPath) {
-		const begin = seconds();
-		const { x, y } = levelCoordinates(matrix);
-		return { matrix, b, x, y, buildSeconds: seconds() - begin };
-	}
+	if (coordsPath === undefined) return { matrix, b, places: null, buildSeconds: 0 };
 	const [x, y] = await readColumns(coordsPath, 2);
 	if (x.length !== matrix.n) {
 		throw new MatrixFileError(`${coordsPath}: ${x.length} rows (expected ${matrix.n})`);
 	}
-	return { matrix, b, x, y, buildSeconds: 0 };
+	return { matrix, b, places: { x, y }, buildSeconds: 0 };
 }
 
 /** Solves a system from its matrix to its answer and times the phases. */
-function time({ matrix, b, x, y, buildSeconds }: System, kind: BenchCase | 'matrix') {
+function time({ matrix, b, places, buildSeconds }: System, kind: BenchCase | 'matrix') {
 	const begin = seconds();
-	const symbolic = analyse(matrix, orderNestedDissection(matrix, x, y));
+	const order = places
+		? orderNestedDissection(matrix, places.x, places.y)
+		: orderMinimumDegree(matrix);
+	const symbolic = analyse(matrix, order);
 	const analysed = seconds();
-	const result = factorise(symbolic, matrix);
+	const result = factorise(symbolic, matrix, process.availableMemory());
 	const factored = seconds();
 	if (result.status === 'not-positive-definite') {
 		return `the matrix is not positive definite at row ${result.row + 1} (expected a symmetric positive definite one)`;
 	}
 	if (result.status === 'too-large') {
-		return `the factor needs ${result.bytes} bytes (expected at most ${result.limitBytes})`;
+		return `its factor takes ${megabytes(result.bytes)} (expected at most the ${megabytes(result.limitBytes)} that are free)`;
 	}
 	const solution = solveWith(result.factor, b);
 	const solved = seconds();
@@ -111,7 +139,7 @@ function time({ matrix, b, x, y, buildSeconds }: System, kind: BenchCase | 'matr
 		nonzeros: matrix.column.length,
 		case: kind,
 		threads: 1,
-		method: METHOD,
+		method: places ? METHODS.dissection : METHODS.degree,
 		seconds: {
 			build: buildSeconds,
 			analyse: analysed - begin,
@@ -163,21 +191,23 @@ async function bench(): Promise<number> {
 	if ((values.matrix === undefined) !== (values.rhs === undefined)) {
 		return failWith([`arguments: --matrix and --rhs go together (expected ${USAGE})`]);
 	}
+	if (values.matrix === undefined && values.coords !== undefined) {
+		return failWith(['--coords: no system to place (expected --matrix and --rhs with it)']);
+	}
+	if (values.matrix !== undefined && values.dump !== undefined) {
+		return failWith(['--dump: writes the system of a case (expected no --matrix with it)']);
+	}
 	if (positionals.length !== (values.dump === undefined ? 0 : 2)) {
 		return failWith([
 			`arguments: unexpected ${positionals.join(' ') || 'end'} (expected ${USAGE})`
 		]);
 	}
 	try {
-		const isFile = values.matrix !== undefined && values.rhs !== undefined;
+		const { matrix, rhs } = values;
+		const isFile = matrix !== undefined && rhs !== undefined;
 		const system = isFile
-			? await systemOfFiles(values.matrix ?? '', values.rhs ?? '', values.coords)
-			: systemOfPlan(nodes, kind);
-		if (values.dump !== undefined) {
-			await writeMatrix(values.dump, system.matrix);
-			await writeColumns(positionals[0], [system.b]);
-			await writeColumns(positionals[1], [system.x, system.y]);
-		}
+			? await systemOfFiles(matrix, rhs, values.coords)
+			: await systemOfCase(nodes, kind, values.dump, positionals);
 		const timed = time(system, isFile ? 'matrix' : kind);
 		if (typeof timed === 'string') return failWith([`${values.matrix ?? 'system'}: ${timed}`]);
 		if (values.out !== undefined) await writeColumns(values.out, [timed.solution]);
@@ -186,7 +216,9 @@ async function bench(): Promise<number> {
 	} catch (error) {
 		if (error instanceof MatrixFileError) return failWith([error.message]);
 		if (error instanceof Error && 'code' in error && 'path' in error) {
-			return failWith([`${String(error.path)}: ${error.message}`]);
+			return failWith([
+				`${String(error.path)}: ${error.message} (expected a Matrix Market file that may be read or written)`
+			]);
 		}
 		throw error;
 	}

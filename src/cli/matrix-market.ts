@@ -56,7 +56,10 @@ async function readNumbers(
 	if (count === 0) throw new MatrixFileError(`${path}: the file is empty`);
 }
 
-/** Reads a symmetric matrix, of which either one triangle or both may be stored. */
+/**
+ * Reads a symmetric matrix. A symmetric file holds one triangle; a general one holds both, and they
+ * must agree.
+ */
 export async function readMatrix(path: string): Promise<SymmetricMatrix> {
 	let header: Header = { isCoordinate: true, isSymmetric: true };
 	let size: { n: number; entries: number } | undefined;
@@ -75,7 +78,7 @@ export async function readMatrix(path: string): Promise<SymmetricMatrix> {
 		(numbers, line) => {
 			if (!size) {
 				const [n, m, entries] = numbers;
-				if (numbers.length !== 3 || n !== m) {
+				if (numbers.length !== 3 || n !== m || !numbers.every(isCount) || n > MOST_ROWS) {
 					throw new MatrixFileError(
 						`${path}:${line}: sizes ${numbers.join(' ')} (expected n n entries)`
 					);
@@ -86,28 +89,69 @@ export async function readMatrix(path: string): Promise<SymmetricMatrix> {
 				values = new Float64Array(entries);
 				return;
 			}
+			const { n, entries } = size;
 			const [i, j, value] = numbers;
-			if (numbers.length !== 3 || i < 1 || j < 1 || i > size.n || j > size.n) {
+			const isInside = isCount(i) && isCount(j) && i >= 1 && j >= 1 && i <= n && j <= n;
+			if (numbers.length !== 3 || !isInside) {
 				throw new MatrixFileError(
-					`${path}:${line}: "${numbers.join(' ')}" (expected row, column of 1 to ${size.n}, value)`
+					`${path}:${line}: "${numbers.join(' ')}" (expected row, column of 1 to ${n}, value)`
 				);
 			}
-			// A general file holds both triangles: the lower one is enough.
-			if (!header.isSymmetric && i < j) return;
+			if (stored === entries) {
+				throw new MatrixFileError(`${path}:${line}: one entry more than the ${entries} announced`);
+			}
 			rows[stored] = i - 1;
 			columns[stored] = j - 1;
 			values[stored++] = value;
 		}
 	);
-	if (!size) throw new MatrixFileError(`${path}: no sizes`);
-	if (header.isSymmetric && stored !== size.entries) {
+	if (!size) throw new MatrixFileError(`${path}: no sizes (expected a line n n entries)`);
+	if (stored !== size.entries) {
 		throw new MatrixFileError(`${path}: ${stored} entries (expected ${size.entries})`);
 	}
+	return header.isSymmetric
+		? assembleEntries(size.n, rows, columns, values)
+		: fromBothTriangles(path, size.n, rows, columns, values);
+}
+
+/** Rows of which all indices fit an int32. */
+const MOST_ROWS = 2 ** 31 - 2;
+
+function isCount(value: number): boolean {
+	return Number.isInteger(value) && value >= 0;
+}
+
+/** Symmetric matrix from a file with both triangles, which must agree entry by entry. */
+function fromBothTriangles(
+	path: string,
+	n: number,
+	rows: Int32Array,
+	columns: Int32Array,
+	values: Float64Array
+): SymmetricMatrix {
+	// Lower entries minus upper ones: nothing is left of a symmetric matrix.
+	const difference = assembleEntries(
+		n,
+		rows,
+		columns,
+		values.map((value, e) => (rows[e] > columns[e] ? value : -value))
+	);
+	for (let i = 0; i < n; i++) {
+		for (let p = difference.rowStart[i]; p < difference.rowStart[i + 1]; p++) {
+			const j = difference.column[p];
+			if (j !== i && difference.value[p] !== 0) {
+				throw new MatrixFileError(
+					`${path}: entries (${i + 1}, ${j + 1}) and (${j + 1}, ${i + 1}) differ (expected a symmetric matrix)`
+				);
+			}
+		}
+	}
+	const lower = Int32Array.from(rows.keys()).filter((e) => rows[e] >= columns[e]);
 	return assembleEntries(
-		size.n,
-		rows.subarray(0, stored),
-		columns.subarray(0, stored),
-		values.subarray(0, stored)
+		n,
+		lower.map((e) => rows[e]),
+		lower.map((e) => columns[e]),
+		Float64Array.from(lower, (e) => values[e])
 	);
 }
 
@@ -124,15 +168,18 @@ export async function readColumns(path: string, columns: number): Promise<Float6
 		},
 		(numbers, line) => {
 			if (rows < 0) {
-				rows = numbers[0];
-				if (numbers[1] !== columns) {
-					throw new MatrixFileError(`${path}:${line}: ${numbers[1]} columns (expected ${columns})`);
+				if (numbers.length !== 2 || !isCount(numbers[0]) || numbers[1] !== columns) {
+					throw new MatrixFileError(
+						`${path}:${line}: sizes ${numbers.join(' ')} (expected rows and ${columns} as columns)`
+					);
 				}
+				rows = numbers[0];
 				return;
 			}
 			values.push(...numbers);
 		}
 	);
+	if (rows < 0) throw new MatrixFileError(`${path}: no sizes (expected a line rows columns)`);
 	if (values.length !== rows * columns) {
 		throw new MatrixFileError(`${path}: ${values.length} values (expected ${rows * columns})`);
 	}

@@ -1,4 +1,4 @@
-import { mkdtemp, rm } from 'node:fs/promises';
+import { mkdtemp, rm, writeFile } from 'node:fs/promises';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { EigenvalueDecomposition, Matrix } from 'ml-matrix';
@@ -6,9 +6,8 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import {
 	analyse,
 	factorise,
-	levelCoordinates,
 	multiply,
-	orderNestedDissection,
+	orderMinimumDegree,
 	relativeResidual,
 	solveWith,
 	type SymmetricMatrix
@@ -24,8 +23,7 @@ beforeAll(async () => {
 afterAll(() => rm(folder, { recursive: true }));
 
 function solve(matrix: SymmetricMatrix, b: Float64Array): Float64Array {
-	const { x, y } = levelCoordinates(matrix);
-	const result = factorise(analyse(matrix, orderNestedDissection(matrix, x, y)), matrix);
+	const result = factorise(analyse(matrix, orderMinimumDegree(matrix)), matrix);
 	if (result.status !== 'factorised') throw new Error(result.status);
 	return solveWith(result.factor, b);
 }
@@ -68,6 +66,38 @@ describe('Matrix Market files', () => {
 		const columns = [Float64Array.of(1 / 3, -2e-17, 5), Float64Array.of(0, 1e300, 7)];
 		await writeColumns(join(folder, 'xy.mtx'), columns);
 		expect(await readColumns(join(folder, 'xy.mtx'), 2)).toEqual(columns);
+	});
+
+	it('a general file holds both triangles, and they must agree', async () => {
+		const path = join(folder, 'general.mtx');
+		const head = '%%MatrixMarket matrix coordinate real general\n% remark\n';
+		await writeFile(path, `${head}2 2 4\n1 1 3\n1 2 -1\n2 1 -1\n2 2 2\n`);
+		const { rowStart, column, value } = await readMatrix(path);
+		expect([[...rowStart], [...column], [...value]]).toEqual([
+			[0, 2, 4],
+			[0, 1, 0, 1],
+			[3, -1, -1, 2]
+		]);
+		await writeFile(path, `${head}2 2 4\n1 1 3\n1 2 -1\n2 1 -1.5\n2 2 2\n`);
+		await expect(readMatrix(path)).rejects.toThrow(/entries \(1, 2\) and \(2, 1\) differ/);
+		await writeFile(path, `${head}2 2 3\n1 1 3\n1 2 -1\n2 2 2\n`);
+		await expect(readMatrix(path)).rejects.toThrow(/entries \(1, 2\) and \(2, 1\) differ/);
+	});
+
+	it.each([
+		['2 3 1\n1 1 1\n', /:2: sizes 2 3 1/],
+		['2 2 1.5\n1 1 1\n', /:2: sizes 2 2 1\.5/],
+		['2 2 1\n3 1 1\n', /:3: "3 1 1" \(expected row, column of 1 to 2, value\)/],
+		['2 2 1\n1.5 1 1\n', /:3: "1\.5 1 1"/],
+		['2 2 1\n1 1\n', /:3: "1 1"/],
+		['2 2 1\n1 1 x\n', /:3: "1 1 x" \(expected finite numbers\)/],
+		['2 2 1\n1 1 1\n2 2 1\n', /:4: one entry more than the 1 announced/],
+		['2 2 3\n1 1 1\n2 2 1\n', /: 2 entries \(expected 3\)/],
+		['', /no sizes/]
+	])('refuses the body %j', async (body, message) => {
+		const path = join(folder, 'broken.mtx');
+		await writeFile(path, `%%MatrixMarket matrix coordinate real symmetric\n${body}`);
+		await expect(readMatrix(path)).rejects.toThrow(message);
 	});
 
 	it('names file and line of what is wrong', async () => {

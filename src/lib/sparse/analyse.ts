@@ -12,6 +12,8 @@ import { findSupernodes } from './supernodes.ts';
 /** Everything about a factor that depends on the matrix's pattern only; kept for the pattern. */
 export interface SymbolicFactor {
 	readonly n: number;
+	/** Stored entries of the analysed pattern. */
+	readonly storedEntries: number;
 	/** Elimination order: new position -> row of the matrix. Length n. */
 	readonly perm: Int32Array;
 	readonly supernodes: number;
@@ -21,7 +23,10 @@ export interface SymbolicFactor {
 	readonly rowStart: Int32Array;
 	/** Rows of each panel, new numbering, increasing; its own columns come first. */
 	readonly rows: Int32Array;
-	/** Start of each panel in the factor's values. Length supernodes + 1. */
+	/**
+	 * Start of each panel in the factor's values. Length supernodes + 1. Doubles, so that the size of
+	 * a factor that is too large can be told; those of a factor that was made fit an int32.
+	 */
 	readonly panelStart: Float64Array;
 	/** Parent supernode, -1 at a root. Children come before parents. Length supernodes. */
 	readonly parent: Int32Array;
@@ -75,6 +80,7 @@ export function analyse(
 	const relative = relativeRows({ count, start, rowStart, parent }, rows);
 	return {
 		n,
+		storedEntries: matrix.column.length,
 		perm,
 		supernodes: count,
 		start,

@@ -93,11 +93,14 @@ function countingSort(keys: Int32Array, keyCount: number, items?: Int32Array): I
 /**
  * The weighted graph Laplacian plus a diagonal: the nodal matrix of a resistor network whose edges
  * have the given conductances and whose nodes are tied to sources by `tie`. Lengths: edges; n.
+ *
+ * @param value entries of an earlier matrix of this plan, to be overwritten; fresh if not given
  */
 export function assembleLaplacian(
 	plan: AssemblyPlan,
 	conductance: Float64Array,
-	tie: Float64Array
+	tie: Float64Array,
+	value: Float64Array = new Float64Array(plan.column.length)
 ): SymmetricMatrix {
 	const { n, from, to, rowStart, column, upperEntry, lowerEntry, diagonalEntry } = plan;
 	if (conductance.length !== from.length || tie.length !== n) {
@@ -105,7 +108,10 @@ export function assembleLaplacian(
 			`${conductance.length} conductances and ${tie.length} ties, expected ${from.length} and ${n}`
 		);
 	}
-	const value = new Float64Array(column.length);
+	if (value.length !== column.length) {
+		throw new RangeError(`${value.length} entries to overwrite, the plan has ${column.length}`);
+	}
+	value.fill(0);
 	for (let i = 0; i < n; i++) value[diagonalEntry[i]] = tie[i];
 	for (let e = 0; e < from.length; e++) {
 		const g = conductance[e];

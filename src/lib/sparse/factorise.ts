@@ -1,5 +1,5 @@
 import type { SymbolicFactor } from './analyse.ts';
-import { factorisePanel, subtractOuterProduct } from './kernels.ts';
+import { factorisePanel, subtractProduct } from './kernels.ts';
 import type { SymmetricMatrix } from './matrix.ts';
 
 /** A = P^T L L^T P. */
@@ -11,12 +11,18 @@ export interface CholeskyFactor {
 
 export type FactoriseResult =
 	| { readonly status: 'factorised'; readonly factor: CholeskyFactor }
-	/** The matrix is not positive definite: the pivot of this row was zero or negative. */
+	/**
+	 * The matrix is not positive definite: the pivot of this row was zero, negative or no number.
+	 * Rounding may leave a tiny positive pivot where a part of a graph has no tie at all, so a
+	 * caller that allows such parts looks for them in the graph.
+	 */
 	| { readonly status: 'not-positive-definite'; readonly row: number }
 	/** The factor would not fit; nothing was allocated. */
 	| { readonly status: 'too-large'; readonly bytes: number; readonly limitBytes: number };
 
 const BYTES_PER_VALUE = 8;
+/** Offsets into panels and stack are int32, so neither may hold more values. */
+const MOST_VALUES = 2 ** 31 - 1;
 
 /** Memory that a factor and its making take, bytes. */
 export function factorBytes(symbolic: SymbolicFactor): number {
@@ -28,14 +34,26 @@ export function factorBytes(symbolic: SymbolicFactor): number {
  * Numeric multifrontal factorisation of a matrix with the analysed pattern. Each front is a panel
  * (the columns eliminated in it) and an update matrix for its parent; updates wait on a stack, which
  * works because children come before parents in postorder.
+ *
+ * @param matrix of the pattern that was analysed; else a RangeError
+ * @param limitBytes most memory that factor and working space may take together
  */
 export function factorise(
 	symbolic: SymbolicFactor,
 	matrix: SymmetricMatrix,
 	limitBytes = Infinity
 ): FactoriseResult {
+	const { length } = matrix.value;
+	if (matrix.n !== symbolic.n || length !== symbolic.storedEntries) {
+		throw new RangeError(
+			`a matrix of ${matrix.n} rows and ${length} entries, analysed were ${symbolic.n} and ${symbolic.storedEntries}`
+		);
+	}
 	const bytes = factorBytes(symbolic);
 	if (bytes > limitBytes) return { status: 'too-large', bytes, limitBytes };
+	if (Math.max(symbolic.panelValues, symbolic.stackValues) > MOST_VALUES) {
+		return { status: 'too-large', bytes, limitBytes: MOST_VALUES * BYTES_PER_VALUE };
+	}
 	const { supernodes, start, rowStart, panelStart, parent, entryStart, entryFrom, entryTo } =
 		symbolic;
 	const panels = new Float64Array(symbolic.panelValues);
@@ -44,13 +62,13 @@ export function factorise(
 	const firstChild = new Int32Array(supernodes).fill(-1);
 	const nextSibling = new Int32Array(supernodes).fill(-1);
 	/** Where each waiting update starts on the stack. */
-	const stackStart = new Float64Array(supernodes);
+	const stackStart = new Int32Array(supernodes);
 	let top = 0;
 	for (let s = 0; s < supernodes; s++) {
 		const width = start[s + 1] - start[s];
 		const height = rowStart[s + 1] - rowStart[s];
 		const below = height - width;
-		const panel = panelStart[s];
+		const panel = panelStart[s] | 0;
 		for (let p = entryStart[s]; p < entryStart[s + 1]; p++) {
 			panels[panel + entryTo[p]] = matrix.value[entryFrom[p]];
 		}
@@ -64,7 +82,8 @@ export function factorise(
 			return { status: 'not-positive-definite', row: symbolic.perm[start[s] + failed] };
 		}
 		if (below === 0) continue;
-		subtractOuterProduct(update, panels, panel, width, below);
+		const belowPanel = panel + width * width;
+		subtractProduct(update, 0, below, panels, belowPanel, width, below, below, width);
 		stackStart[s] = top;
 		stack.set(update.subarray(0, below * below), top);
 		top += below * below;

@@ -1,11 +1,14 @@
 export type { SymmetricMatrix } from './matrix.ts';
 export type { AssemblyPlan } from './assemble.ts';
 export { assembleEntries, assembleLaplacian, planAssembly } from './assemble.ts';
-export { multiply, norm2, relativeResidual } from './multiply.ts';
+export { multiply, norm2, relativeResidual, residualOf } from './multiply.ts';
 export { orderNestedDissection } from './nested-dissection.ts';
-export { levelCoordinates } from './level-coordinates.ts';
+export { orderMinimumDegree } from './minimum-degree.ts';
 export type { SymbolicFactor } from './analyse.ts';
 export { analyse } from './analyse.ts';
 export type { CholeskyFactor, FactoriseResult } from './factorise.ts';
 export { factorBytes, factorise } from './factorise.ts';
 export { solveWith } from './solve.ts';
+export { solveBlockWith } from './solve-block.ts';
+export type { Refinement } from './refine.ts';
+export { refine } from './refine.ts';

@@ -22,14 +22,25 @@ export function norm2(x: Float64Array): number {
 	return Math.sqrt(sum);
 }
 
+/** r = b - A x. Lengths n; `r` is overwritten and returned. */
+export function residualOf(
+	matrix: SymmetricMatrix,
+	x: Float64Array,
+	b: Float64Array,
+	r: Float64Array = new Float64Array(matrix.n)
+): Float64Array {
+	multiply(matrix, x, r);
+	for (let i = 0; i < r.length; i++) r[i] = b[i] - r[i];
+	return r;
+}
+
 /** norm(b - A x) / norm(b), recomputed from the matrix; the plain norm where b is zero. */
 export function relativeResidual(
 	matrix: SymmetricMatrix,
 	x: Float64Array,
 	b: Float64Array
 ): number {
-	const r = multiply(matrix, x);
-	for (let i = 0; i < r.length; i++) r[i] = b[i] - r[i];
+	const size = norm2(residualOf(matrix, x, b));
 	const scale = norm2(b);
-	return scale > 0 ? norm2(r) / scale : norm2(r);
+	return scale > 0 ? size / scale : size;
 }

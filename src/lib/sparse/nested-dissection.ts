@@ -7,7 +7,7 @@ const LEAF_NODES = 12;
  * Geometric nested dissection (A. George, SIAM J. Numer. Anal. 10 (1973) 345): each part is cut at
  * the median of the longer side of its bounding box; the nodes of the low side that have a
  * neighbour on the high side separate the two and are ordered last. Needs a coordinate pair for
- * each node (any unit), not a lattice.
+ * each node (any unit, finite; else a RangeError), not a lattice.
  *
  * @returns perm: new position -> old index, length n
  */
@@ -17,6 +17,14 @@ export function orderNestedDissection(
 	y: ArrayLike<number>
 ): Int32Array {
 	const { n, rowStart, column } = matrix;
+	if (x.length !== n || y.length !== n) {
+		throw new RangeError(`${x.length} and ${y.length} coordinates for ${n} nodes`);
+	}
+	for (let i = 0; i < n; i++) {
+		if (!Number.isFinite(x[i]) || !Number.isFinite(y[i])) {
+			throw new RangeError(`node ${i} is at ${x[i]}, ${y[i]}: expected finite coordinates`);
+		}
+	}
 	const order = new Int32Array(n);
 	for (let i = 0; i < n; i++) order[i] = i;
 	/** Part that each node is in at present; a neighbour in another part does not count. */

@@ -20,7 +20,7 @@ export function solveWith(
 	for (let s = 0; s < supernodes; s++) {
 		const first = start[s];
 		const width = start[s + 1] - first;
-		const panel = panelStart[s];
+		const panel = panelStart[s] | 0;
 		const rowBase = rowStart[s];
 		const height = rowStart[s + 1] - rowBase;
 		for (let i = 0; i < height; i++) {
@@ -35,7 +35,7 @@ export function solveWith(
 	for (let s = supernodes - 1; s >= 0; s--) {
 		const first = start[s];
 		const width = start[s + 1] - first;
-		const panel = panelStart[s];
+		const panel = panelStart[s] | 0;
 		const rowBase = rowStart[s];
 		const height = rowStart[s + 1] - rowBase;
 		for (let i = height - 1; i >= 0; i--) {
