@@ -1,4 +1,4 @@
-import { existsSync, readdirSync, statSync } from 'node:fs';
+import { existsSync, lstatSync, readdirSync, statSync } from 'node:fs';
 import { join } from 'node:path';
 import { Refusal, ROOT } from './paths.mjs';
 import { run } from './run.mjs';
@@ -19,6 +19,11 @@ export async function installPackages() {
 	const marker = join(ROOT, 'node_modules', '.package-lock.json');
 	const lock = join(ROOT, 'package-lock.json');
 	if (existsSync(marker) && statSync(marker).mtimeMs >= statSync(lock).mtimeMs) return;
+	const folder = join(ROOT, 'node_modules');
+	// Installing through a link would empty the folder that it leads to, which somebody else uses.
+	if (lstatSync(folder, { throwIfNoEntry: false })?.isSymbolicLink()) {
+		throw new Refusal('node_modules is a link to packages of another state: remove the link.');
+	}
 	console.log('Installing the locked packages …');
 	const { code, output } = await run('npm', ['ci', '--no-audit', '--no-fund'], { quiet: true });
 	if (code !== 0) throw new Refusal(`npm ci failed: ${lastLine(output)}`);

@@ -1,8 +1,7 @@
 import {
 	floorplanEventSchema,
 	type ApiClient,
-	type FloorplanDetail,
-	type FloorplanEvent
+	type FloorplanDetail
 } from '#lib/contracts/index.ts';
 import type { EditDraft } from '#lib/floorplan/edits/index.ts';
 import type { Floorplan } from '#lib/floorplan/index.ts';
@@ -17,8 +16,8 @@ interface SessionOptions {
 	readonly client: ApiClient;
 	readonly canDraw: boolean;
 	readonly canEditLoads: boolean;
-	/** A job or result of this floorplan changed. */
-	readonly onEvent: (event: FloorplanEvent) => void;
+	/** A job or result of this floorplan changed, or may have while the events were away. */
+	readonly onChange: () => void;
 	/** Others' edits have just arrived. */
 	readonly onRemote: (by: string, label: string) => void;
 }
@@ -42,7 +41,7 @@ export class FloorplanSession {
 		client,
 		canDraw,
 		canEditLoads,
-		onEvent,
+		onChange,
 		onRemote
 	}: SessionOptions) {
 		this.#sync = new SyncClient({
@@ -68,7 +67,7 @@ export class FloorplanSession {
 			{ canEditLoads, schedule }
 		);
 		this.state = new EditorState(editor);
-		this.#events = this.#listen(detail.id, onEvent);
+		this.#events = this.#listen(detail.id, onChange);
 		addEventListener('online', this.#onOnline);
 	}
 
@@ -76,16 +75,19 @@ export class FloorplanSession {
 		return this.state.floorplan;
 	}
 
-	#listen(floorplanId: string, onEvent: (event: FloorplanEvent) => void): EventSource {
+	#listen(floorplanId: string, onChange: () => void): EventSource {
 		const events = new EventSource(`/api/v1/floorplans/${encodeURIComponent(floorplanId)}/events`);
 		// Also after each reconnection: what was missed is asked for.
-		events.addEventListener('ready', () => this.#sync.refresh());
+		events.addEventListener('ready', () => {
+			this.#sync.refresh();
+			onChange();
+		});
 		for (const type of ['edit', 'job', 'result']) {
 			events.addEventListener(type, (message: MessageEvent<string>) => {
 				const parsed = floorplanEventSchema.safeParse(JSON.parse(message.data));
 				if (!parsed.success) return;
 				if (parsed.data.type === 'edit') this.#sync.remoteChanged(parsed.data.version);
-				else onEvent(parsed.data);
+				else onChange();
 			});
 		}
 		return events;
