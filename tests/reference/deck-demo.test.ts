@@ -1,8 +1,8 @@
 /**
  * The deck of the demo in a general circuit simulator (ngspice, from Debian's packages), in its
  * heaviest mode and corner: every node within 1e-6 of nominal of the solver's answer. The straps
- * stand at twice their pitch, since the simulator's equation solver takes minutes for the 50,000
- * nodes of the plan itself.
+ * stand at twice their pitch, since the simulator's equation ordering takes seven minutes for the 50,000
+ * nodes of the plan itself (then the largest deviation was 2.0e-9 V).
  */
 import { expect, test } from 'vitest';
 import { DEMO_SEED, makeDemoFloorplan } from '#lib/demo/index.ts';

@@ -3,12 +3,12 @@
  * types, solved by its own solver, and compared at every node with SciPy's general sparse solver,
  * with stored answers and in a run of its own. The test needs python3 with SciPy (Debian: python3-scipy).
  */
-import { execFileSync } from 'node:child_process';
 import { readFileSync } from 'node:fs';
 import { fileURLToPath } from 'node:url';
 import { gunzipSync } from 'node:zlib';
 import { describe, expect, it } from 'vitest';
 import { readOpenNetlist } from '../support/open-netlist.ts';
+import { runPython } from '../support/python.ts';
 import { outcomeOf, readingOf } from '../support/solving.ts';
 
 const pathOf = (name: string) => fileURLToPath(new URL(name, import.meta.url));
@@ -25,14 +25,7 @@ function readVolts(text: string): Map<string, number> {
 }
 
 function solveWithScipy(deck: string): Map<string, number> {
-	const options = { encoding: 'utf8', maxBuffer: 1 << 26 } as const;
-	try {
-		return readVolts(execFileSync('python3', [pathOf('solve_netlist.py'), deck], options));
-	} catch (error) {
-		throw new Error('python3 with SciPy is needed here: apt-get install python3-scipy', {
-			cause: error
-		});
-	}
+	return readVolts(runPython(pathOf('solve_netlist.py'), deck));
 }
 
 // Figures of the netlists as published beside them.
