@@ -182,8 +182,10 @@ function createCluster(binaries, user, data, isThrowAway) {
 	const made = spawnSync(join(binaries, 'initdb'), args, { ...user, cwd: '/', encoding: 'utf8' });
 	if (made.status === 0) return;
 	rmSync(data, { recursive: true, force: true });
-	const reason = (made.stderr ?? '').trim().split('\n').at(-1) ?? made.error?.message ?? '';
-	throw new Refusal(`The database cannot be created: ${reason}`);
+	const said = (made.stderr ?? '').trim().split('\n');
+	// The last line only tells what was cleared away; the reason stands before it.
+	const reason = said.find((line) => /could not|No space|FATAL|error/i.test(line)) ?? said.at(-1);
+	throw new Refusal(`The database cannot be created: ${reason || made.error?.message}`);
 }
 
 /** @param {string} binaries @param {{uid?: number, gid?: number}} user @param {string} folder @param {string[]} flags */
