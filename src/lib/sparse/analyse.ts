@@ -62,7 +62,8 @@ export function analyse(
 	const { n } = matrix;
 	const inOrder = permutedLower(matrix, order, invert(order, n));
 	const post = postorder(eliminationTree(inOrder));
-	const perm = Int32Array.from(post, (position) => order[position]);
+	const perm = new Int32Array(n);
+	for (let k = 0; k < n; k++) perm[k] = order[post[k]];
 	const iperm = invert(perm, n);
 	const lower = permutedLower(matrix, perm, iperm);
 	const parentColumn = eliminationTree(lower);

@@ -13,16 +13,12 @@ export interface SupernodePartition {
 
 /** A merge may always fill panels up to this many columns. */
 const SMALL_COLUMNS = 16;
-/** Share of a merged panel that may be zeros, by its number of columns. */
-const ZERO_SHARE: readonly (readonly [columns: number, share: number])[] = [
-	[SMALL_COLUMNS, 1],
-	[48, 0.1],
-	[128, 0.05],
-	[Infinity, 0.02]
-];
 
+/** Share of a merged panel that may be zeros, by its number of columns. */
 function allowedZeros(columns: number): number {
-	return ZERO_SHARE.find(([most]) => columns <= most)?.[1] ?? 0;
+	if (columns <= SMALL_COLUMNS) return 1;
+	if (columns <= 48) return 0.1;
+	return columns <= 128 ? 0.05 : 0.02;
 }
 
 /** Entries of a panel's lower trapezoid. */
@@ -35,54 +31,95 @@ function panelEntries(width: number, height: number): number {
  * that stores few zeros (C. Ashcraft, R. Grimes, ACM TOMS 15 (1989) 291).
  */
 export function findSupernodes(parent: Int32Array, counts: Int32Array): SupernodePartition {
-	const n = parent.length;
-	const children = new Int32Array(n);
-	for (let j = 0; j < n; j++) if (parent[j] !== -1) children[parent[j]]++;
-	const start: number[] = [];
-	const of = new Int32Array(n);
-	for (let j = 0; j < n; j++) {
-		const continues =
-			j > 0 && parent[j - 1] === j && counts[j] === counts[j - 1] - 1 && children[j] === 1;
-		if (!continues) start.push(j);
-		of[j] = start.length - 1;
-	}
-	const count = start.length;
-	const end = Int32Array.from({ length: count }, (_, s) => (s + 1 < count ? start[s + 1] : n));
-	const height = Int32Array.from(start, (j) => counts[j]);
-	const up = Int32Array.from(end, (after) =>
-		parent[after - 1] === -1 ? -1 : of[parent[after - 1]]
-	);
+	const fundamental = fundamentalSupernodes(parent, counts);
+	const { count, start, up } = fundamental;
+	const height = new Int32Array(count);
 	/** Entries that are not zeros of a merge. */
-	const entries = Float64Array.from(height, (rows, s) => panelEntries(end[s] - start[s], rows));
+	const entries = new Float64Array(count);
+	for (let s = 0; s < count; s++) {
+		height[s] = counts[start[s]];
+		entries[s] = panelEntries(start[s + 1] - start[s], height[s]);
+	}
 	/** First column of the merged panel that ends where supernode s ends. */
-	const mergedStart = Int32Array.from(start);
+	const mergedStart = start.slice(0, count);
 	const isMerged = new Uint8Array(count);
+	let kept = count;
 	for (let s = 0; s < count; s++) {
 		const p = up[s];
+		const end = start[s + 1];
 		// Only the last child is next to its parent's columns.
-		if (p === -1 || end[s] !== start[p]) continue;
-		const ownWidth = end[s] - mergedStart[s];
-		const width = ownWidth + end[p] - start[p];
+		if (p === -1 || end !== start[p]) continue;
+		const ownWidth = end - mergedStart[s];
+		const width = ownWidth + start[p + 1] - start[p];
 		const rows = ownWidth + counts[start[p]];
 		const total = panelEntries(width, rows);
 		const filled = entries[s] + entries[p];
 		if (total - filled > allowedZeros(width) * total) continue;
 		isMerged[s] = 1;
+		kept--;
 		mergedStart[p] = mergedStart[s];
 		height[p] = rows;
 		entries[p] = filled;
 	}
-	const kept: number[] = [];
-	const newIndex = new Int32Array(count);
-	for (let s = 0; s < count; s++) {
-		newIndex[s] = kept.length;
-		if (!isMerged[s]) kept.push(s);
+	return keepUnmerged(fundamental, kept, isMerged, mergedStart, height);
+}
+
+interface FundamentalSupernodes {
+	readonly count: number;
+	/** As in `SupernodePartition`. */
+	readonly start: Int32Array;
+	/** Supernode of the parent of each one's last column, -1 at a root. Length count. */
+	readonly up: Int32Array;
+}
+
+/** Longest runs of columns of one structure, each the only child of the next. */
+function fundamentalSupernodes(parent: Int32Array, counts: Int32Array): FundamentalSupernodes {
+	const n = parent.length;
+	const children = new Int32Array(n);
+	for (let j = 0; j < n; j++) if (parent[j] !== -1) children[parent[j]]++;
+	/** Supernode of each column. */
+	const of = new Int32Array(n);
+	const starts = new Int32Array(n + 1);
+	let count = 0;
+	for (let j = 0; j < n; j++) {
+		const continues =
+			j > 0 && parent[j - 1] === j && counts[j] === counts[j - 1] - 1 && children[j] === 1;
+		if (!continues) starts[count++] = j;
+		of[j] = count - 1;
 	}
-	return {
-		count: kept.length,
-		start: Int32Array.from([...kept.map((s) => mergedStart[s]), n]),
-		height: Int32Array.from(kept, (s) => height[s]),
+	starts[count] = n;
+	const up = new Int32Array(count);
+	for (let s = 0; s < count; s++) {
+		const above = parent[starts[s + 1] - 1];
+		up[s] = above === -1 ? -1 : of[above];
+	}
+	return { count, start: starts.slice(0, count + 1), up };
+}
+
+/** Leaves out the supernodes that joined their parents, and numbers the rest anew. */
+function keepUnmerged(
+	{ count, start, up }: FundamentalSupernodes,
+	kept: number,
+	isMerged: Uint8Array,
+	mergedStart: Int32Array,
+	mergedHeight: Int32Array
+): SupernodePartition {
+	const newIndex = new Int32Array(count);
+	for (let s = 0, next = 0; s < count; s++) {
+		newIndex[s] = next;
+		if (isMerged[s] === 0) next++;
+	}
+	const keptStart = new Int32Array(kept + 1);
+	const height = new Int32Array(kept);
+	const parent = new Int32Array(kept);
+	for (let s = 0; s < count; s++) {
+		if (isMerged[s] === 1) continue;
+		const k = newIndex[s];
+		keptStart[k] = mergedStart[s];
+		height[k] = mergedHeight[s];
 		// A parent that has itself joined its own parent is found where its columns went.
-		parent: Int32Array.from(kept, (s) => (up[s] === -1 ? -1 : newIndex[up[s]]))
-	};
+		parent[k] = up[s] === -1 ? -1 : newIndex[up[s]];
+	}
+	keptStart[kept] = start[count];
+	return { count: kept, start: keptStart, height, parent };
 }
