@@ -41,7 +41,16 @@ const pure = {
 
 export default ts.config(
 	{
-		ignores: ['build/', '.svelte-kit/', '.manyweir/', 'node_modules/', 'test-results/', 'drizzle/']
+		ignores: [
+			'build/',
+			'.svelte-kit/',
+			'.manyweir/',
+			'node_modules/',
+			'test-results/',
+			'drizzle/',
+			// AssemblyScript: its compiler checks it.
+			'src/lib/sparse/assembly/'
+		]
 	},
 	js.configs.recommended,
 	...ts.configs.recommended,

@@ -124,7 +124,7 @@ function time({ matrix, b, places, buildSeconds }: System, kind: BenchCase | 'ma
 		: orderMinimumDegree(matrix);
 	const symbolic = analyse(matrix, order);
 	const analysed = seconds();
-	const result = factorise(symbolic, matrix, process.availableMemory());
+	const result = factorise(symbolic, matrix, { limitBytes: process.availableMemory() });
 	const factored = seconds();
 	if (result.status === 'not-positive-definite') {
 		return `the matrix is not positive definite at row ${result.row + 1} (expected a symmetric positive definite one)`;

@@ -5,10 +5,12 @@ import {
 	analyse,
 	assembleLaplacian,
 	factorise,
+	groupColumns,
 	norm2,
 	planAssembly,
 	relativeResidual,
 	type CholeskyFactor,
+	type EliminationOrder,
 	type SymmetricMatrix
 } from '#lib/sparse/index.ts';
 
@@ -39,15 +41,25 @@ export function dense({ n, rowStart, column, value }: SymmetricMatrix): Matrix {
 	return full;
 }
 
-/** The order 0 .. n - 1. */
-export function naturalOrder(n: number): Int32Array {
+/** 0 .. n - 1. */
+export function upTo(n: number): Int32Array {
 	return Int32Array.from({ length: n }, (_, i) => i);
 }
 
-export function factorOf(matrix: SymmetricMatrix, order: Int32Array): CholeskyFactor {
+/** The order in which the rows stand. */
+export function naturalOrder(matrix: SymmetricMatrix): EliminationOrder {
+	return groupColumns(matrix, upTo(matrix.n));
+}
+
+export function factorOf(matrix: SymmetricMatrix, order: EliminationOrder): CholeskyFactor {
 	const result = factorise(analyse(matrix, order), matrix);
 	if (result.status !== 'factorised') throw new Error(result.status);
 	return result.factor;
+}
+
+/** The values of a factor's panels. */
+export function panelsOf({ symbolic, space }: CholeskyFactor): Float64Array {
+	return new Float64Array(space.memory.buffer, space.layout.panels, symbolic.panelValues).slice();
 }
 
 /** A lattice tied at its first node; edges are numbered node by node, right before up. */

@@ -65,8 +65,6 @@ export type FactorOutcome =
 			readonly limitBytes: number;
 	  };
 
-/** Largest factor of one net that is tried: an array buffer's length that every engine still grants. */
-const FACTOR_LIMIT_BYTES = 4 * 1024 ** 3;
 
 /** Connected parts by union-find with path halving. */
 function connectedParts(network: Network): Int32Array {
@@ -161,7 +159,7 @@ export function factorGrid(pattern: GridPattern, circuit: Circuit): FactorOutcom
 			const y = Float64Array.from(net.node, (node) => network.nodes.yNm[node]);
 			net.symbolic = analyse(matrix, orderNestedDissection(matrix, x, y));
 		}
-		const outcome = factorise(net.symbolic, matrix, FACTOR_LIMIT_BYTES);
+		const outcome = factorise(net.symbolic, matrix);
 		if (outcome.status === 'too-large') {
 			return { ...outcome, net: index };
 		}

@@ -1,13 +1,5 @@
-import {
-	columnCounts,
-	eliminationTree,
-	permutedLower,
-	postorder,
-	transpose,
-	type LowerPattern
-} from './elimination-tree.ts';
+import { invert, type EliminationOrder } from './elimination-order.ts';
 import type { SymmetricMatrix } from './matrix.ts';
-import { findSupernodes } from './supernodes.ts';
 
 /** Everything about a factor that depends on the matrix's pattern only; kept for the pattern. */
 export interface SymbolicFactor {
@@ -41,197 +33,150 @@ export interface SymbolicFactor {
 	readonly entryFrom: Int32Array;
 	/** Place of that entry in its panel. */
 	readonly entryTo: Int32Array;
-	/** Largest number of rows below the own columns of any panel. */
-	readonly largestBelow: number;
-	/** Most values that update matrices waiting for their parent take at once. */
-	readonly stackValues: number;
 	/** Values in all panels, the unused upper corners included. */
 	readonly panelValues: number;
 }
 
 /**
  * Symbolic analysis for a multifrontal Cholesky factorisation (I. S. Duff, J. K. Reid, ACM TOMS 9
- * (1983) 302; J. W. H. Liu, SIAM Review 34 (1992) 82) in the given elimination order.
+ * (1983) 302; J. W. H. Liu, SIAM Review 34 (1992) 82): the rows of every panel, where they stand in
+ * the parent's, and where the matrix's entries are loaded. A piece of the order is one panel.
  *
- * @param order new position -> row, a permutation of 0 .. n - 1; else a RangeError
+ * @param order of a permutation of 0 .. n - 1; else a RangeError
  */
 export function analyse(
 	matrix: Pick<SymmetricMatrix, 'n' | 'rowStart' | 'column'>,
-	order: Int32Array
+	order: EliminationOrder
 ): SymbolicFactor {
 	const { n } = matrix;
-	const inOrder = permutedLower(matrix, order, invert(order, n));
-	const post = postorder(eliminationTree(inOrder));
-	const perm = new Int32Array(n);
-	for (let k = 0; k < n; k++) perm[k] = order[post[k]];
+	const { perm, start, parent } = order;
 	const iperm = invert(perm, n);
-	const lower = permutedLower(matrix, perm, iperm);
-	const parentColumn = eliminationTree(lower);
-	const { count, start, height, parent } = findSupernodes(
-		parentColumn,
-		columnCounts(lower, parentColumn)
-	);
-	const rowStart = new Int32Array(count + 1);
-	const panelStart = new Float64Array(count + 1);
-	for (let s = 0; s < count; s++) {
-		rowStart[s + 1] = rowStart[s] + height[s];
-		panelStart[s + 1] = panelStart[s] + height[s] * (start[s + 1] - start[s]);
-	}
-	const rows = panelRows(lower, { count, start, rowStart, parent });
-	const relative = relativeRows({ count, start, rowStart, parent }, rows);
-	return {
-		n,
-		storedEntries: matrix.column.length,
-		perm,
-		supernodes: count,
-		start,
-		rowStart,
-		rows,
-		panelStart,
-		parent,
-		relative,
-		...matrixEntries(matrix, perm, iperm, { count, start, rowStart }, rows),
-		...updateSizes({ count, start, rowStart, parent }),
-		panelValues: panelStart[count]
-	};
-}
-
-function invert(perm: Int32Array, n: number): Int32Array {
-	const iperm = new Int32Array(n).fill(-1);
-	if (perm.length !== n) throw new RangeError(`an order of ${perm.length} for ${n} rows`);
-	for (let k = 0; k < n; k++) {
-		const old = perm[k];
-		if (!(old >= 0 && old < n) || iperm[old] !== -1) {
-			throw new RangeError(`order[${k}] = ${old}: expected each of 0 to ${n - 1} once`);
-		}
-		iperm[old] = k;
-	}
-	return iperm;
-}
-
-interface Panels {
-	readonly count: number;
-	readonly start: Int32Array;
-	readonly rowStart: Int32Array;
-}
-
-interface PanelTree extends Panels {
-	readonly parent: Int32Array;
-}
-
-/** Row lists: a panel's own columns, then the union of its matrix rows and its children's rows. */
-function panelRows(lower: LowerPattern, { count, start, rowStart, parent }: PanelTree): Int32Array {
-	const below = transpose(lower);
-	const rows = new Int32Array(rowStart[count]);
-	const mark = new Int32Array(lower.n).fill(-1);
-	const filled = new Int32Array(count);
-	const firstChild = new Int32Array(count).fill(-1);
-	const nextSibling = new Int32Array(count).fill(-1);
-	for (let s = 0; s < count; s++) {
+	const supernodes = parent.length;
+	const entries = (matrix.column.length + n) >> 1;
+	const rowStart = new Int32Array(supernodes + 1);
+	const panelStart = new Float64Array(supernodes + 1);
+	const entryStart = new Int32Array(supernodes + 1);
+	const entryFrom = new Int32Array(entries);
+	const entryTo = new Int32Array(entries);
+	let rows = new Int32Array(4 * n);
+	let relative = new Int32Array(4 * n);
+	/** Supernode whose list a row was last put into. Length n. */
+	const mark = new Int32Array(n).fill(-1);
+	/** Place of a row in the list at hand. Length n. */
+	const place = new Int32Array(n);
+	const firstChild = new Int32Array(supernodes).fill(-1);
+	const nextSibling = new Int32Array(supernodes).fill(-1);
+	let loaded = 0;
+	let next = 0;
+	for (let s = 0; s < supernodes; s++) {
+		const first = start[s];
 		const end = start[s + 1];
-		let next = rowStart[s];
-		for (let j = start[s]; j < end; j++) {
+		const width = end - first;
+		const base = next;
+		let most = matrixEntriesIn(matrix, perm, first, end) + width;
+		for (let child = firstChild[s]; child !== -1; child = nextSibling[child]) {
+			most += rowStart[child + 1] - rowStart[child];
+		}
+		if (next + most > rows.length) {
+			rows = grown(rows, next + most);
+			relative = grown(relative, next + most);
+		}
+		for (let j = first; j < end; j++) {
 			rows[next++] = j;
 			mark[j] = s;
 		}
-		for (let j = start[s]; j < end; j++) {
-			for (let p = below.rowStart[j]; p < below.rowStart[j + 1]; p++) {
-				const i = below.column[p];
-				if (mark[i] !== s) {
-					mark[i] = s;
-					rows[next++] = i;
-				}
-			}
-		}
-		for (let child = firstChild[s]; child !== -1; child = nextSibling[child]) {
-			for (let p = rowStart[child]; p < filled[child]; p++) {
-				const i = rows[p];
-				if (i >= end && mark[i] !== s) {
-					mark[i] = s;
-					rows[next++] = i;
-				}
-			}
-		}
-		rows.subarray(rowStart[s], next).sort();
-		filled[s] = next;
-		if (next !== rowStart[s + 1]) {
-			throw new Error(
-				`panel ${s} has ${next - rowStart[s]} rows, its count says ${rowStart[s + 1] - rowStart[s]}`
-			);
-		}
-		if (parent[s] !== -1) {
-			nextSibling[s] = firstChild[parent[s]];
-			firstChild[parent[s]] = s;
-		}
-	}
-	return rows;
-}
-
-/** Where each row below a panel stands in its parent's row list: both lists are increasing. */
-function relativeRows({ count, start, rowStart, parent }: PanelTree, rows: Int32Array): Int32Array {
-	const relative = new Int32Array(rows.length);
-	for (let s = 0; s < count; s++) {
-		if (parent[s] === -1) continue;
-		const base = rowStart[parent[s]];
-		let q = base;
-		for (let p = rowStart[s] + start[s + 1] - start[s]; p < rowStart[s + 1]; p++) {
-			while (rows[q] < rows[p]) q++;
-			relative[p] = q - base;
-		}
-	}
-	return relative;
-}
-
-/** Which entry of the matrix is loaded into which place of which panel. */
-function matrixEntries(
-	matrix: Pick<SymmetricMatrix, 'n' | 'rowStart' | 'column'>,
-	perm: Int32Array,
-	iperm: Int32Array,
-	{ count, start, rowStart }: Panels,
-	rows: Int32Array
-): Pick<SymbolicFactor, 'entryStart' | 'entryFrom' | 'entryTo'> {
-	const entries = (matrix.column.length + matrix.n) >> 1;
-	const entryStart = new Int32Array(count + 1);
-	const entryFrom = new Int32Array(entries);
-	const entryTo = new Int32Array(entries);
-	const place = new Int32Array(matrix.n);
-	let next = 0;
-	for (let s = 0; s < count; s++) {
-		const width = start[s + 1] - start[s];
-		for (let p = rowStart[s]; p < rowStart[s + 1]; p++) place[rows[p]] = p - rowStart[s];
-		for (let j = start[s]; j < start[s + 1]; j++) {
+		// The rows of the matrix's entries; each entry keeps its row until the places are known.
+		for (let j = first; j < end; j++) {
 			const old = perm[j];
 			for (let p = matrix.rowStart[old]; p < matrix.rowStart[old + 1]; p++) {
 				const i = iperm[matrix.column[p]];
 				if (i < j) continue;
-				entryFrom[next] = p;
-				entryTo[next++] = place[i] * width + (j - start[s]);
+				entryFrom[loaded] = p;
+				entryTo[loaded++] = i;
+				if (mark[i] === s) continue;
+				mark[i] = s;
+				rows[next++] = i;
 			}
 		}
-		entryStart[s + 1] = next;
+		for (let child = firstChild[s]; child !== -1; child = nextSibling[child]) {
+			const stop = rowStart[child + 1];
+			for (let p = rowStart[child] + start[child + 1] - start[child]; p < stop; p++) {
+				const i = rows[p];
+				if (mark[i] === s) continue;
+				mark[i] = s;
+				rows[next++] = i;
+			}
+		}
+		sortRun(rows, base + width, next);
+		rowStart[s + 1] = next;
+		panelStart[s + 1] = panelStart[s] + (next - base) * width;
+		for (let p = base; p < next; p++) place[rows[p]] = p - base;
+		for (let entry = entryStart[s], j = first; entry < loaded; entry++) {
+			// Every column has an entry, its diagonal: one step reaches the next.
+			const from = entryFrom[entry];
+			if (from < matrix.rowStart[perm[j]] || from >= matrix.rowStart[perm[j] + 1]) j++;
+			entryTo[entry] = place[entryTo[entry]] * width + (j - first);
+		}
+		entryStart[s + 1] = loaded;
+		for (let child = firstChild[s]; child !== -1; child = nextSibling[child]) {
+			const stop = rowStart[child + 1];
+			for (let p = rowStart[child] + start[child + 1] - start[child]; p < stop; p++) {
+				relative[p] = place[rows[p]];
+			}
+		}
+		if (parent[s] === -1) continue;
+		nextSibling[s] = firstChild[parent[s]];
+		firstChild[parent[s]] = s;
 	}
-	return { entryStart, entryFrom, entryTo };
+	return {
+		n,
+		storedEntries: matrix.column.length,
+		perm,
+		supernodes,
+		start,
+		rowStart,
+		rows: rows.slice(0, next),
+		panelStart,
+		parent,
+		relative: relative.slice(0, next),
+		entryStart,
+		entryFrom,
+		entryTo,
+		panelValues: panelStart[supernodes]
+	};
 }
 
-/** Sizes of the working memory: children's updates wait on a stack until their parent is built. */
-function updateSizes({
-	count,
-	start,
-	rowStart,
-	parent
-}: PanelTree): Pick<SymbolicFactor, 'largestBelow' | 'stackValues'> {
-	const below = (s: number) => rowStart[s + 1] - rowStart[s] - (start[s + 1] - start[s]);
-	const waiting = new Float64Array(count);
-	let onStack = 0;
-	let stackValues = 0;
-	let largestBelow = 0;
-	for (let s = 0; s < count; s++) {
-		onStack -= waiting[s];
-		const own = below(s) ** 2;
-		onStack += own;
-		if (parent[s] !== -1) waiting[parent[s]] += own;
-		largestBelow = Math.max(largestBelow, below(s));
-		stackValues = Math.max(stackValues, onStack);
+/** Entries of the matrix in the rows of a piece: no more rows can come from them. */
+function matrixEntriesIn(
+	{ rowStart }: Pick<SymmetricMatrix, 'rowStart'>,
+	perm: Int32Array,
+	first: number,
+	end: number
+): number {
+	let count = 0;
+	for (let j = first; j < end; j++) count += rowStart[perm[j] + 1] - rowStart[perm[j]];
+	return count;
+}
+
+function grown(values: Int32Array, least: number): Int32Array<ArrayBuffer> {
+	const larger = new Int32Array(Math.max(least, values.length + (values.length >> 1)));
+	larger.set(values);
+	return larger;
+}
+
+/** Longest run for which insertion beats the engine's sort, which is called at some cost. */
+const INSERTION_LENGTH = 48;
+
+/** Sorts `values` from `begin` to before `end`. */
+function sortRun(values: Int32Array, begin: number, end: number): void {
+	if (end - begin > INSERTION_LENGTH) {
+		values.subarray(begin, end).sort();
+		return;
 	}
-	return { largestBelow, stackValues };
+	for (let p = begin + 1; p < end; p++) {
+		const value = values[p];
+		let q = p;
+		for (; q > begin && values[q - 1] > value; q--) values[q] = values[q - 1];
+		values[q] = value;
+	}
 }

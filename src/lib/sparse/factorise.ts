@@ -1,12 +1,29 @@
 import type { SymbolicFactor } from './analyse.ts';
-import { factorisePanel, subtractProduct } from './kernels.ts';
+import {
+	bindCalls,
+	createFactorMemory,
+	layOut,
+	type FactorMemory,
+	type SharedSpace,
+	type ThreadSpace
+} from './factor-memory.ts';
+import { kernelModule, makeCalls, MOST_MEMORY_BYTES, type KernelCall } from './kernels.ts';
 import type { SymmetricMatrix } from './matrix.ts';
+import type { SecondThread } from './second-thread.ts';
+import { splitWork, type Ranges, type WorkSplit } from './work-split.ts';
 
 /** A = P^T L L^T P. */
 export interface CholeskyFactor {
 	readonly symbolic: SymbolicFactor;
-	/** Panels of L, row-major, at `symbolic.panelStart`. Length `symbolic.panelValues`. */
-	readonly panels: Float64Array;
+	readonly space: FactorMemory;
+	/** The second thread and how the work is shared with it, null without one. */
+	readonly team: Team | null;
+}
+
+export interface Team {
+	readonly thread: SecondThread;
+	readonly split: WorkSplit;
+	readonly space: SharedSpace;
 }
 
 export type FactoriseResult =
@@ -20,108 +37,99 @@ export type FactoriseResult =
 	/** The factor would not fit; nothing was allocated. */
 	| { readonly status: 'too-large'; readonly bytes: number; readonly limitBytes: number };
 
-const BYTES_PER_VALUE = 8;
-/** Offsets into panels and stack are int32, so neither may hold more values. */
-const MOST_VALUES = 2 ** 31 - 1;
+export interface FactoriseOptions {
+	/** Most memory that factor and working space may take together, bytes; at most 4 GB. */
+	readonly limitBytes?: number;
+	/** Shares the work, which is worth its cost from `SECOND_THREAD_ROWS` on. */
+	readonly secondThread?: SecondThread | null;
+	/** A factor of the same analysis whose memory is taken over; it must not be used any more. */
+	readonly replaces?: CholeskyFactor | null;
+}
+
+/** Rows from which a second thread gains more than handing it work costs. */
+export const SECOND_THREAD_ROWS = 250_000;
+/**
+ * Supernodes per kernel call: engines put a faster version of a kernel in place between calls, not
+ * within one.
+ */
+const SUPERNODES_PER_CALL = 256;
 
 /** Memory that a factor and its making take, bytes. */
 export function factorBytes(symbolic: SymbolicFactor): number {
-	const { panelValues, stackValues, largestBelow } = symbolic;
-	return BYTES_PER_VALUE * (panelValues + stackValues + largestBelow ** 2);
+	return layOut(symbolic, null).bytes;
 }
 
 /**
  * Numeric multifrontal factorisation of a matrix with the analysed pattern. Each front is a panel
- * (the columns eliminated in it) and an update matrix for its parent; updates wait on a stack, which
- * works because children come before parents in postorder.
+ * (the columns eliminated in it) and an update matrix for its parent.
  *
  * @param matrix of the pattern that was analysed; else a RangeError
- * @param limitBytes most memory that factor and working space may take together
  */
 export function factorise(
 	symbolic: SymbolicFactor,
 	matrix: SymmetricMatrix,
-	limitBytes = Infinity
+	options: FactoriseOptions = {}
 ): FactoriseResult {
+	const { limitBytes = MOST_MEMORY_BYTES, secondThread = null, replaces = null } = options;
 	const { length } = matrix.value;
 	if (matrix.n !== symbolic.n || length !== symbolic.storedEntries) {
 		throw new RangeError(
 			`a matrix of ${matrix.n} rows and ${length} entries, analysed were ${symbolic.n} and ${symbolic.storedEntries}`
 		);
 	}
-	const bytes = factorBytes(symbolic);
-	if (bytes > limitBytes) return { status: 'too-large', bytes, limitBytes };
-	if (Math.max(symbolic.panelValues, symbolic.stackValues) > MOST_VALUES) {
-		return { status: 'too-large', bytes, limitBytes: MOST_VALUES * BYTES_PER_VALUE };
+	let factor = replaces?.symbolic === symbolic ? replaces : null;
+	if (factor === null) {
+		const split = secondThread && splitWork(symbolic);
+		const layout = layOut(symbolic, split);
+		const most = Math.min(limitBytes, MOST_MEMORY_BYTES);
+		if (layout.bytes > most) {
+			return { status: 'too-large', bytes: layout.bytes, limitBytes: most };
+		}
+		const space = createFactorMemory(symbolic, layout);
+		const { shared } = layout;
+		const team =
+			secondThread && split && shared ? { thread: secondThread, split, space: shared } : null;
+		factor = { symbolic, space, team };
 	}
-	const { supernodes, start, rowStart, panelStart, parent, entryStart, entryFrom, entryTo } =
-		symbolic;
-	const panels = new Float64Array(symbolic.panelValues);
-	const stack = new Float64Array(symbolic.stackValues);
-	const update = new Float64Array(symbolic.largestBelow ** 2);
-	const firstChild = new Int32Array(supernodes).fill(-1);
-	const nextSibling = new Int32Array(supernodes).fill(-1);
-	/** Where each waiting update starts on the stack. */
-	const stackStart = new Int32Array(supernodes);
-	let top = 0;
-	for (let s = 0; s < supernodes; s++) {
-		const width = start[s + 1] - start[s];
-		const height = rowStart[s + 1] - rowStart[s];
-		const below = height - width;
-		const panel = panelStart[s] | 0;
-		for (let p = entryStart[s]; p < entryStart[s + 1]; p++) {
-			panels[panel + entryTo[p]] = matrix.value[entryFrom[p]];
-		}
-		update.fill(0, 0, below * below);
-		for (let child = firstChild[s]; child !== -1; child = nextSibling[child]) {
-			top = stackStart[child];
-			addChildUpdate(symbolic, child, stack, top, panels, panel, width, update, below);
-		}
-		const failed = factorisePanel(panels, panel, width, height);
-		if (failed !== -1) {
-			return { status: 'not-positive-definite', row: symbolic.perm[start[s] + failed] };
-		}
-		if (below === 0) continue;
-		const belowPanel = panel + width * width;
-		subtractProduct(update, 0, below, panels, belowPanel, width, below, below, width);
-		stackStart[s] = top;
-		stack.set(update.subarray(0, below * below), top);
-		top += below * below;
-		// Last child first: that is the order in which the stack is emptied.
-		nextSibling[s] = firstChild[parent[s]];
-		firstChild[parent[s]] = s;
-	}
-	return { status: 'factorised', factor: { symbolic, panels } };
+	const { memory, layout } = factor.space;
+	new Float64Array(memory.buffer, layout.values, length).set(matrix.value);
+	const failed = runFactorisation(factor);
+	if (failed !== -1) return { status: 'not-positive-definite', row: symbolic.perm[failed] };
+	return { status: 'factorised', factor };
 }
 
-/** Adds a child's update matrix into its parent's panel and update matrix. */
-function addChildUpdate(
-	{ start, rowStart, relative }: SymbolicFactor,
-	child: number,
-	stack: Float64Array,
-	source: number,
-	panels: Float64Array,
-	panel: number,
-	width: number,
-	update: Float64Array,
-	below: number
-): void {
-	const first = rowStart[child] + start[child + 1] - start[child];
-	const size = rowStart[child + 1] - first;
-	for (let i = 0; i < size; i++) {
-		const row = relative[first + i];
-		const from = source + i * size;
-		if (row < width) {
-			const to = panel + row * width;
-			for (let j = 0; j <= i; j++) panels[to + relative[first + j]] += stack[from + j];
-			continue;
-		}
-		const toPanel = panel + row * width;
-		const toUpdate = (row - width) * below - width;
-		for (let j = 0; j <= i; j++) {
-			const column = relative[first + j];
-			if (column < width) panels[toPanel + column] += stack[from + j];
-			else update[toUpdate + column] += stack[from + j];
+/** -1, or the column at which it failed. */
+function runFactorisation({ space, team, symbolic }: CholeskyFactor): number {
+	const { layout, kernels } = space;
+	const calls = (thread: ThreadSpace, ranges: Ranges) => [
+		...bindCalls(layout, thread),
+		...factoriseCalls(ranges)
+	];
+	if (!team) return makeCalls(kernels, calls(layout.own, [0, symbolic.supernodes]));
+	const { own, other, top } = team.split;
+	const failed = runTogether(space, team, calls(layout.own, own), calls(team.space.other, other));
+	return failed === -1 ? makeCalls(kernels, calls(team.space.top, top)) : failed;
+}
+
+/** Makes one list of calls here and one on the second thread, and waits for both. */
+export function runTogether(
+	{ memory, kernels, isShared }: FactorMemory,
+	{ thread }: Team,
+	own: readonly KernelCall[],
+	other: readonly KernelCall[]
+): number {
+	thread.start({ module: kernelModule(isShared), memory, calls: other });
+	const failed = makeCalls(kernels, own);
+	const otherFailed = thread.finish() ?? makeCalls(kernels, other);
+	return failed === -1 ? otherFailed : failed;
+}
+
+function factoriseCalls(ranges: Ranges): KernelCall[] {
+	const calls: KernelCall[] = [];
+	for (let r = 0; r < ranges.length; r += 2) {
+		for (let from = ranges[r]; from < ranges[r + 1]; from += SUPERNODES_PER_CALL) {
+			calls.push(['factoriseRange', from, Math.min(from + SUPERNODES_PER_CALL, ranges[r + 1])]);
 		}
 	}
+	return calls;
 }

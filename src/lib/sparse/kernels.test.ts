@@ -1,46 +1,85 @@
 import fc from 'fast-check';
-import { Matrix } from 'ml-matrix';
 import { describe, expect, it } from 'vitest';
-import { factorisePanel, subtractProduct } from './kernels.ts';
+import {
+	assemble,
+	factorOf,
+	graphs,
+	lattice,
+	naturalOrder,
+	panelsOf
+} from '../../../tests/support/graphs.ts';
+import { factorisePlainly, lowerPanels } from '../../../tests/support/plain-cholesky.ts';
+import {
+	analyse,
+	assembleEntries,
+	factorise,
+	orderMinimumDegree,
+	orderNestedDissection,
+	type EliminationOrder,
+	type SymmetricMatrix
+} from './index.ts';
 
-/** A well-conditioned panel of a known factor: A = L L^T over all rows, first columns only. */
-function knownPanel(width: number, below: number, seed: number) {
-	const height = width + below;
-	const factor = Matrix.zeros(height, width);
-	for (let i = 0; i < height; i++) {
-		for (let j = 0; j <= Math.min(i, width - 1); j++) {
-			factor.set(i, j, i === j ? 2 + ((i + seed) % 3) : Math.sin(seed + 7 * i + 3 * j) / width);
+/** A full matrix: one panel, with so many rows as own columns. */
+function fullMatrix(n: number, seed: number): SymmetricMatrix {
+	const row: number[] = [];
+	const column: number[] = [];
+	const value: number[] = [];
+	for (let i = 0; i < n; i++) {
+		for (let j = 0; j <= i; j++) {
+			row.push(i);
+			column.push(j);
+			value.push(i === j ? n : Math.sin(seed + 7 * i + 3 * j));
 		}
 	}
-	return { factor, product: factor.mmul(factor.transpose()) };
+	return assembleEntries(
+		n,
+		Int32Array.from(row),
+		Int32Array.from(column),
+		Float64Array.from(value)
+	);
 }
 
-describe('dense kernels', () => {
-	it('a panel made from a known factor gives that factor, at any width and offset', () => {
+function expectAsPlain(matrix: SymmetricMatrix, order: EliminationOrder): void {
+	const symbolic = analyse(matrix, order);
+	const expected = factorisePlainly(symbolic, matrix);
+	const found = factorise(symbolic, matrix);
+	if (!(expected instanceof Float64Array) || found.status !== 'factorised') {
+		expect(found).toEqual({ status: 'not-positive-definite', ...expected });
+		return;
+	}
+	const panels = lowerPanels(symbolic, panelsOf(found.factor));
+	const scale = expected.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
+	expected.forEach((value, p) =>
+		expect(Math.abs(panels[p] - value)).toBeLessThanOrEqual(1e-13 * scale)
+	);
+}
+
+describe('numeric kernels', () => {
+	it('give the factor of the plain algorithm on random graphs', () => {
 		fc.assert(
-			fc.property(
-				fc.integer({ min: 1, max: 80 }),
-				fc.integer({ min: 0, max: 9 }),
-				fc.nat(50),
-				(width, below, offset) => {
-					const { factor, product } = knownPanel(width, below, offset);
-					const height = width + below;
-					const panel = new Float64Array(offset + height * width + 5).fill(-7);
-					for (let i = 0; i < height; i++) {
-						for (let j = 0; j < width; j++) panel[offset + i * width + j] = product.get(i, j);
-					}
-					expect(factorisePanel(panel, offset, width, height)).toBe(-1);
-					for (let i = 0; i < height; i++) {
-						for (let j = 0; j <= Math.min(i, width - 1); j++) {
-							expect(panel[offset + i * width + j]).toBeCloseTo(factor.get(i, j), 12);
-						}
-					}
-					// Nothing is written before or after the panel.
-					expect(panel.subarray(0, offset).every((value) => value === -7)).toBe(true);
-					expect(panel.subarray(offset + height * width).every((value) => value === -7)).toBe(true);
-				}
-			)
+			fc.property(graphs, fc.boolean(), (graph, hasPlaces) => {
+				const matrix = assemble(graph);
+				expectAsPlain(
+					matrix,
+					hasPlaces ? orderNestedDissection(matrix, graph.x, graph.y) : orderMinimumDegree(matrix)
+				);
+			})
 		);
+	});
+
+	it('give it for panels of every width', () => {
+		for (let n = 1; n <= 70; n++) {
+			const matrix = fullMatrix(n, n);
+			expectAsPlain(matrix, naturalOrder(matrix));
+		}
+	});
+
+	it('give it for panels with rows below, in a tree of several levels', () => {
+		for (const side of [17, 24, 41]) {
+			const graph = lattice(side, side + 3, (e) => 1 + (e % 9));
+			const matrix = assemble(graph);
+			expectAsPlain(matrix, orderNestedDissection(matrix, graph.x, graph.y));
+		}
 	});
 
 	it.each([
@@ -48,38 +87,37 @@ describe('dense kernels', () => {
 		[3, -1],
 		[40, NaN],
 		[49, Infinity]
-	])('names column %i, whose pivot becomes %d', (column, pivot) => {
-		const width = 50;
-		const panel = new Float64Array(width * width);
-		for (let i = 0; i < width; i++) panel[i * width + i] = i === column ? pivot : 1;
-		expect(factorisePanel(panel, 0, width, width)).toBe(column);
+	])('name row %i, whose pivot becomes %d', (row, pivot) => {
+		const matrix = fullMatrix(50, 1);
+		for (let i = 0; i < 50; i++) {
+			for (let p = matrix.rowStart[i]; p < matrix.rowStart[i + 1]; p++) {
+				const isDiagonal = matrix.column[p] === i;
+				matrix.value[p] = isDiagonal ? (i === row ? pivot : 1) : 0;
+			}
+		}
+		expect(factorise(analyse(matrix, naturalOrder(matrix)), matrix)).toEqual({
+			status: 'not-positive-definite',
+			row
+		});
 	});
 
-	it('subtracts B D^T on and below the diagonal', () => {
-		fc.assert(
-			fc.property(
-				fc.integer({ min: 1, max: 14 }),
-				fc.integer({ min: 1, max: 14 }),
-				fc.integer({ min: 0, max: 9 }),
-				(rows, most, depth) => {
-					const columns = Math.min(rows, most);
-					const source = new Matrix(
-						Array.from({ length: rows }, (_, i) =>
-							Array.from({ length: depth + 1 }, (_, k) => Math.cos(5 * i + k))
-						)
-					);
-					const panel = Float64Array.from(source.to1DArray());
-					const target = new Float64Array(rows * columns).fill(1);
-					subtractProduct(target, 0, columns, panel, 0, depth + 1, rows, columns, depth);
-					for (let i = 0; i < rows; i++) {
-						for (let j = 0; j <= Math.min(i, columns - 1); j++) {
-							let expected = 1;
-							for (let k = 0; k < depth; k++) expected -= source.get(i, k) * source.get(j, k);
-							expect(target[i * columns + j]).toBeCloseTo(expected, 13);
-						}
-					}
-				}
-			)
-		);
+	it('take over the memory of a factor of the same analysis', () => {
+		const graph = lattice(30, 30);
+		const first = assemble(graph);
+		const symbolic = analyse(first, orderNestedDissection(first, graph.x, graph.y));
+		const old = factorOf(first, orderNestedDissection(first, graph.x, graph.y));
+		const second = assemble({ ...graph, conductance: graph.conductance.map((g) => 3 * g) });
+		const fresh = factorise(symbolic, second);
+		const before = factorise(symbolic, first);
+		if (fresh.status !== 'factorised' || before.status !== 'factorised') throw new Error('refused');
+		const { factor } = before;
+		const replaced = factorise(symbolic, second, { replaces: factor });
+		if (replaced.status !== 'factorised') throw new Error(replaced.status);
+		expect(replaced.factor.space).toBe(factor.space);
+		expect(panelsOf(replaced.factor)).toEqual(panelsOf(fresh.factor));
+		// One of another analysis is left alone.
+		const other = factorise(symbolic, second, { replaces: old });
+		if (other.status !== 'factorised') throw new Error(other.status);
+		expect(other.factor.space).not.toBe(old.space);
 	});
 });

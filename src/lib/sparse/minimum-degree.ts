@@ -1,4 +1,6 @@
+import type { EliminationOrder } from './elimination-order.ts';
 import type { SymmetricMatrix } from './matrix.ts';
+import { groupColumns } from './supernodes.ts';
 
 /** Nodes with more neighbours than this many times sqrt(n) are ordered last, unseen by the others. */
 const DENSE_FACTOR = 10;
@@ -67,12 +69,15 @@ interface Buckets {
  * Approximate minimum degree (P. R. Amestoy, T. A. Davis, I. S. Duff, SIAM J. Matrix Anal. Appl. 17
  * (1996) 886), for graphs without coordinates: eliminates the node with the fewest neighbours left,
  * by an upper bound of their number. About a quarter more fill on strap grids than nested dissection.
- *
- * @returns perm: new position -> old index, length n
  */
 export function orderMinimumDegree(
 	matrix: Pick<SymmetricMatrix, 'n' | 'rowStart' | 'column'>
-): Int32Array {
+): EliminationOrder {
+	return groupColumns(matrix, eliminateByDegree(matrix));
+}
+
+/** New position -> row. Length n. */
+function eliminateByDegree(matrix: Pick<SymmetricMatrix, 'n' | 'rowStart' | 'column'>): Int32Array {
 	const { n } = matrix;
 	const order = new Int32Array(n);
 	let ordered = 0;

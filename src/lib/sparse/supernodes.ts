@@ -1,15 +1,6 @@
-/**
- * Supernodes: runs of consecutive columns that are factored as one dense panel.
- */
-export interface SupernodePartition {
-	readonly count: number;
-	/** First column of each supernode; entry `count` is n. Length count + 1. */
-	readonly start: Int32Array;
-	/** Rows of each panel: its own columns and those below. Length count. */
-	readonly height: Int32Array;
-	/** Supernode of the first row below each panel, -1 at a root. Length count. */
-	readonly parent: Int32Array;
-}
+import { invert, type EliminationOrder } from './elimination-order.ts';
+import { columnCounts, eliminationTree, permutedLower, postorder } from './elimination-tree.ts';
+import type { SymmetricMatrix } from './matrix.ts';
 
 /** A merge may always fill panels up to this many columns. */
 const SMALL_COLUMNS = 16;
@@ -27,18 +18,39 @@ function panelEntries(width: number, height: number): number {
 }
 
 /**
+ * Groups the columns of any order into pieces: the order is made a postorder of its elimination
+ * tree, which leaves the fill as it is.
+ *
+ * @param order new position -> row, a permutation of 0 .. n - 1; else a RangeError
+ */
+export function groupColumns(
+	matrix: Pick<SymmetricMatrix, 'n' | 'rowStart' | 'column'>,
+	order: Int32Array
+): EliminationOrder {
+	const { n } = matrix;
+	const inOrder = permutedLower(matrix, order, invert(order, n));
+	const post = postorder(eliminationTree(inOrder));
+	const perm = new Int32Array(n);
+	for (let k = 0; k < n; k++) perm[k] = order[post[k]];
+	const lower = permutedLower(matrix, perm, invert(perm, n));
+	const parentColumn = eliminationTree(lower);
+	return { perm, ...findSupernodes(parentColumn, columnCounts(lower, parentColumn)) };
+}
+
+/**
  * Fundamental supernodes of a postordered factor, then relaxed: a supernode joins its parent where
  * that stores few zeros (C. Ashcraft, R. Grimes, ACM TOMS 15 (1989) 291).
  */
-export function findSupernodes(parent: Int32Array, counts: Int32Array): SupernodePartition {
+function findSupernodes(
+	parent: Int32Array,
+	counts: Int32Array
+): Pick<EliminationOrder, 'start' | 'parent'> {
 	const fundamental = fundamentalSupernodes(parent, counts);
 	const { count, start, up } = fundamental;
-	const height = new Int32Array(count);
 	/** Entries that are not zeros of a merge. */
 	const entries = new Float64Array(count);
 	for (let s = 0; s < count; s++) {
-		height[s] = counts[start[s]];
-		entries[s] = panelEntries(start[s + 1] - start[s], height[s]);
+		entries[s] = panelEntries(start[s + 1] - start[s], counts[start[s]]);
 	}
 	/** First column of the merged panel that ends where supernode s ends. */
 	const mergedStart = start.slice(0, count);
@@ -58,15 +70,14 @@ export function findSupernodes(parent: Int32Array, counts: Int32Array): Supernod
 		isMerged[s] = 1;
 		kept--;
 		mergedStart[p] = mergedStart[s];
-		height[p] = rows;
 		entries[p] = filled;
 	}
-	return keepUnmerged(fundamental, kept, isMerged, mergedStart, height);
+	return keepUnmerged(fundamental, kept, isMerged, mergedStart);
 }
 
 interface FundamentalSupernodes {
 	readonly count: number;
-	/** As in `SupernodePartition`. */
+	/** First column of each; entry `count` is n. Length count + 1. */
 	readonly start: Int32Array;
 	/** Supernode of the parent of each one's last column, -1 at a root. Length count. */
 	readonly up: Int32Array;
@@ -101,25 +112,22 @@ function keepUnmerged(
 	{ count, start, up }: FundamentalSupernodes,
 	kept: number,
 	isMerged: Uint8Array,
-	mergedStart: Int32Array,
-	mergedHeight: Int32Array
-): SupernodePartition {
+	mergedStart: Int32Array
+): Pick<EliminationOrder, 'start' | 'parent'> {
 	const newIndex = new Int32Array(count);
 	for (let s = 0, next = 0; s < count; s++) {
 		newIndex[s] = next;
 		if (isMerged[s] === 0) next++;
 	}
 	const keptStart = new Int32Array(kept + 1);
-	const height = new Int32Array(kept);
 	const parent = new Int32Array(kept);
 	for (let s = 0; s < count; s++) {
 		if (isMerged[s] === 1) continue;
 		const k = newIndex[s];
 		keptStart[k] = mergedStart[s];
-		height[k] = mergedHeight[s];
 		// A parent that has itself joined its own parent is found where its columns went.
 		parent[k] = up[s] === -1 ? -1 : newIndex[up[s]];
 	}
 	keptStart[kept] = start[count];
-	return { count: kept, start: keptStart, height, parent };
+	return { start: keptStart, parent };
 }

@@ -1,0 +1,1 @@
+export { WorkerThread } from './worker-thread.ts';
