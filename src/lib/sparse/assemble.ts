@@ -27,44 +27,50 @@ export function planAssembly(n: number, from: Int32Array, to: Int32Array): Assem
 	const edges = from.length;
 	if (to.length !== edges) throw new RangeError(`${edges} edge starts but ${to.length} edge ends`);
 	const entries = 2 * edges + n;
-	// Entry e < edges is (from, to), e < 2 edges is (to, from), the rest is the diagonal.
-	const entryRow = new Int32Array(entries);
-	const entryColumn = new Int32Array(entries);
+	/** First the entries of each row, then where the next of a row goes. */
+	const next = new Int32Array(n + 1);
 	for (let e = 0; e < edges; e++) {
 		const i = from[e];
 		const j = to[e];
 		if (!(i >= 0 && i < n && j >= 0 && j < n && i !== j)) {
 			throw new RangeError(`edge ${e} joins ${i} and ${j}, expected two nodes of 0 to ${n - 1}`);
 		}
-		entryRow[e] = i;
-		entryColumn[e] = j;
-		entryRow[edges + e] = j;
-		entryColumn[edges + e] = i;
+		next[i]++;
+		next[j]++;
 	}
+	// Entry e < edges is (from, to), e < 2 edges is (to, from), the rest is the diagonal.
+	const slotColumn = new Int32Array(entries);
+	const slotEntry = new Int32Array(entries);
+	let slots = 0;
 	for (let i = 0; i < n; i++) {
-		entryRow[2 * edges + i] = i;
-		entryColumn[2 * edges + i] = i;
+		const begin = slots;
+		slots += next[i] + 1;
+		slotColumn[begin] = i;
+		slotEntry[begin] = 2 * edges + i;
+		next[i] = begin + 1;
 	}
-	// Two stable counting sorts, by column and then by row, leave each row's columns increasing.
-	const byColumn = countingSort(entryColumn, n);
-	const byRow = countingSort(entryRow, n, byColumn);
-
+	for (let e = 0; e < edges; e++) {
+		const upper = next[from[e]]++;
+		slotColumn[upper] = to[e];
+		slotEntry[upper] = e;
+		const lower = next[to[e]]++;
+		slotColumn[lower] = from[e];
+		slotEntry[lower] = edges + e;
+	}
 	const rowStart = new Int32Array(n + 1);
 	const column = new Int32Array(entries);
 	const position = new Int32Array(entries);
 	let stored = 0;
-	let row = -1;
-	for (let k = 0; k < entries; k++) {
-		const e = byRow[k];
-		while (row < entryRow[e]) rowStart[++row] = stored;
-		if (stored > rowStart[row] && column[stored - 1] === entryColumn[e]) {
-			position[e] = stored - 1;
-		} else {
-			column[stored] = entryColumn[e];
-			position[e] = stored++;
+	for (let i = 0, begin = 0; i < n; i++) {
+		const end = next[i];
+		sortSlots(slotColumn, slotEntry, begin, end);
+		for (let k = begin; k < end; k++) {
+			if (k === begin || slotColumn[k] !== slotColumn[k - 1]) column[stored++] = slotColumn[k];
+			position[slotEntry[k]] = stored - 1;
 		}
+		rowStart[i + 1] = stored;
+		begin = end;
 	}
-	while (row < n) rowStart[++row] = stored;
 	return {
 		n,
 		from,
@@ -77,17 +83,34 @@ export function planAssembly(n: number, from: Int32Array, to: Int32Array): Assem
 	};
 }
 
-/** Stable order of `0 .. keys.length - 1` (or of `items`) by their keys below `keyCount`. */
-function countingSort(keys: Int32Array, keyCount: number, items?: Int32Array): Int32Array {
-	const next = new Int32Array(keyCount + 1);
-	for (let e = 0; e < keys.length; e++) next[keys[e] + 1]++;
-	for (let key = 0; key < keyCount; key++) next[key + 1] += next[key];
-	const sorted = new Int32Array(keys.length);
-	for (let k = 0; k < keys.length; k++) {
-		const e = items ? items[k] : k;
-		sorted[next[keys[e]]++] = e;
+/** Longest row that is sorted by insertion: rows of a grid have a handful of entries. */
+const INSERTION_LENGTH = 32;
+
+/** Sorts the slots of a row by column. */
+function sortSlots(column: Int32Array, entry: Int32Array, begin: number, end: number): void {
+	if (end - begin > INSERTION_LENGTH) {
+		const order = Int32Array.from({ length: end - begin }, (_, k) => begin + k).sort(
+			(a, b) => column[a] - column[b]
+		);
+		const sortedColumns = order.map((k) => column[k]);
+		entry.set(
+			order.map((k) => entry[k]),
+			begin
+		);
+		column.set(sortedColumns, begin);
+		return;
 	}
-	return sorted;
+	for (let k = begin + 1; k < end; k++) {
+		const c = column[k];
+		const e = entry[k];
+		let to = k;
+		for (; to > begin && column[to - 1] > c; to--) {
+			column[to] = column[to - 1];
+			entry[to] = entry[to - 1];
+		}
+		column[to] = c;
+		entry[to] = e;
+	}
 }
 
 /**
