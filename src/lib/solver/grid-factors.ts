@@ -5,6 +5,7 @@ import {
 	factorise,
 	orderNestedDissection,
 	planAssembly,
+	portMatrix,
 	solveWith,
 	type AssemblyPlan,
 	type CholeskyFactor,
@@ -64,7 +65,6 @@ export type FactorOutcome =
 			readonly bytes: number;
 			readonly limitBytes: number;
 	  };
-
 
 /** Connected parts by union-find with path halving. */
 function connectedParts(network: Network): Int32Array {
@@ -184,6 +184,28 @@ function portNodes(circuit: Circuit): number[][] {
 	return ports.map((nodes) => [...nodes]);
 }
 
+/** Volts at one node of a net for 1 A at another, both ports; 0 where one is held. */
+type PortAnswers = (node: number, port: number) => number;
+
+function answersAt(
+	factor: CholeskyFactor | null,
+	ports: readonly number[],
+	freeOf: Int32Array
+): PortAnswers {
+	const free = ports.filter((node) => freeOf[node] >= 0);
+	if (factor === null || free.length === 0) return () => 0;
+	const indexOf = new Map(free.map((node, index) => [node, index]));
+	const matrix = portMatrix(
+		factor,
+		free.map((node) => freeOf[node])
+	);
+	return (node, port) => {
+		const a = indexOf.get(node);
+		const b = indexOf.get(port);
+		return a === undefined || b === undefined ? 0 : matrix.at(a, b);
+	};
+}
+
 function gridOf(
 	pattern: GridPattern,
 	factors: readonly (CholeskyFactor | null)[],
@@ -192,6 +214,7 @@ function gridOf(
 	part: Int32Array
 ): GridFactors {
 	const columns = new Map<number, PortColumn>();
+	const portAnswers: (PortAnswers | undefined)[] = [];
 	const work = pattern.nets.map((net) => ({
 		right: new Float64Array(net.node.length),
 		answer: new Float64Array(net.node.length)
@@ -217,18 +240,8 @@ function gridOf(
 	function column(net: number, node: number): PortColumn {
 		const kept = columns.get(node);
 		if (kept !== undefined) return kept;
-		const values = new Map<number, number>();
-		const factor = factors[net];
-		if (factor !== null && freeOf[node] >= 0) {
-			const local = work[net];
-			local.right.fill(0);
-			local.right[freeOf[node]] = 1;
-			solveWith(factor, local.right, local.answer);
-			for (const port of ports[net]) {
-				if (freeOf[port] >= 0) values.set(port, local.answer[freeOf[port]]);
-			}
-		}
-		const made: PortColumn = { at: (port) => values.get(port) ?? 0 };
+		const answers = (portAnswers[net] ??= answersAt(factors[net], ports[net], freeOf));
+		const made: PortColumn = { at: (port) => answers(node, port) };
 		columns.set(node, made);
 		return made;
 	}

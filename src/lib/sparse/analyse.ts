@@ -8,6 +8,8 @@ export interface SymbolicFactor {
 	readonly storedEntries: number;
 	/** Elimination order: new position -> row of the matrix. Length n. */
 	readonly perm: Int32Array;
+	/** Row of the matrix -> new position. Length n. */
+	readonly iperm: Int32Array;
 	readonly supernodes: number;
 	/** First column of each supernode, new numbering. Length supernodes + 1. */
 	readonly start: Int32Array;
@@ -132,6 +134,7 @@ export function analyse(
 		n,
 		storedEntries: matrix.column.length,
 		perm,
+		iperm,
 		supernodes,
 		start,
 		rowStart,

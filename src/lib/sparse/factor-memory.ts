@@ -2,6 +2,7 @@ import type { SymbolicFactor } from './analyse.ts';
 import {
 	bindKernels,
 	createMemory,
+	growMemory,
 	KERNEL_SIZES,
 	planSpace,
 	type KernelCall,
@@ -70,6 +71,10 @@ export interface FactorMemory {
 	readonly isShared: boolean;
 	readonly layout: FactorLayout;
 	readonly kernels: Kernels;
+	/** Bytes in use: the layout's, and what `extendMemory` added. */
+	usedBytes: number;
+	/** Where the lanes of a block of right-hand sides lie, 0 before the first block. */
+	lanesAt: number;
 }
 
 /** Depth in the tree, lowest bit. */
@@ -196,7 +201,19 @@ export function createFactorMemory(symbolic: SymbolicFactor, layout: FactorLayou
 		new Int32Array(buffer, layout.previousSibling, symbolic.supernodes)
 	);
 	const kernels = bindKernels(memory, isShared);
-	return { memory, isShared, layout, kernels };
+	return { memory, isShared, layout, kernels, usedBytes: layout.bytes, lanesAt: 0 };
+}
+
+/**
+ * Takes more bytes behind everything else, zero throughout, and returns where they start. Views of
+ * the memory have to be made anew. Throws a RangeError where the memory cannot grow.
+ */
+export function extendMemory(space: FactorMemory, bytes: number): number {
+	const from = space.usedBytes;
+	const missing = from + bytes - space.memory.buffer.byteLength;
+	if (missing > 0) growMemory(space.memory, missing);
+	space.usedBytes = Math.ceil((from + bytes) / 64) * 64;
+	return from;
 }
 
 /** Puts the children of every supernode into lists. */

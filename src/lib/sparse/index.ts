@@ -13,5 +13,7 @@ export { factorBytes, factorise, SECOND_THREAD_ROWS } from './factorise.ts';
 export type { SecondThread, ThreadTask } from './second-thread.ts';
 export { solveWith } from './solve.ts';
 export { solveBlockWith } from './solve-block.ts';
+export type { PortMatrix } from './ports.ts';
+export { portMatrix } from './ports.ts';
 export type { Refinement } from './refine.ts';
 export { refine } from './refine.ts';

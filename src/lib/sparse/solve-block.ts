@@ -1,5 +1,6 @@
 import type { CholeskyFactor } from './factorise.ts';
-import { growMemory, KERNEL_SIZES } from './kernels.ts';
+import { extendMemory } from './factor-memory.ts';
+import { KERNEL_SIZES } from './kernels.ts';
 import { solveWith } from './solve.ts';
 
 /**
@@ -42,11 +43,12 @@ export function solveBlockWith(
 	return x;
 }
 
-/** Space for the lanes, n * lanes doubles behind everything else; made when it is first asked for. */
+/** Space for the lanes, n * lanes doubles; made when it is first asked for. */
 function laneSpace({ symbolic, space }: CholeskyFactor): { at: number; y: Float64Array } {
-	const { memory, layout } = space;
 	const values = symbolic.n * KERNEL_SIZES.lanes;
-	const missing = layout.bytes + 8 * values - memory.buffer.byteLength;
-	if (missing > 0) growMemory(memory, missing);
-	return { at: layout.bytes, y: new Float64Array(memory.buffer, layout.bytes, values) };
+	if (space.lanesAt === 0) space.lanesAt = extendMemory(space, 8 * values);
+	return {
+		at: space.lanesAt,
+		y: new Float64Array(space.memory.buffer, space.lanesAt, values)
+	};
 }

@@ -4,6 +4,7 @@ import { assemble, factorOf, graphs, lattice } from '../../../tests/support/grap
 import {
 	orderMinimumDegree,
 	orderNestedDissection,
+	portMatrix,
 	refine,
 	relativeResidual,
 	solveBlockWith,
@@ -79,5 +80,37 @@ describe('iterative refinement', () => {
 		const zero = new Float64Array(graph.n);
 		const x = new Float64Array(graph.n);
 		expect(refine(matrix, factorOf(matrix, order), zero, x)).toEqual({ steps: 0, residual: 0 });
+	});
+});
+
+describe('entries of the inverse between ports', () => {
+	it('are what solutions for single amperes give', () => {
+		fc.assert(
+			fc.property(
+				graphs,
+				fc.array(fc.nat(), { maxLength: 9 }),
+				fc.boolean(),
+				(graph, picks, hasPlaces) => {
+					const matrix = assemble(graph);
+					const order = hasPlaces
+						? orderNestedDissection(matrix, graph.x, graph.y)
+						: orderMinimumDegree(matrix);
+					const factor = factorOf(matrix, order);
+					const rows = picks.map((pick) => pick % graph.n);
+					const ports = portMatrix(factor, rows);
+					const all = ports.all();
+					rows.forEach((row, a) => {
+						const ampere = new Float64Array(graph.n);
+						ampere[row] = 1;
+						const x = solveWith(factor, ampere);
+						const scale = Math.max(...x.map(Math.abs));
+						rows.forEach((other, b) => {
+							expect(Math.abs(ports.at(a, b) - x[other])).toBeLessThan(1e-12 * scale);
+							expect(all[b * rows.length + a]).toBe(ports.at(a, b));
+						});
+					});
+				}
+			)
+		);
 	});
 });
