@@ -5,7 +5,7 @@ import {
 	factorise,
 	orderNestedDissection,
 	planAssembly,
-	portMatrix,
+	createPorts,
 	solveWith,
 	type AssemblyPlan,
 	type CholeskyFactor,
@@ -195,7 +195,7 @@ function answersAt(
 	const free = ports.filter((node) => freeOf[node] >= 0);
 	if (factor === null || free.length === 0) return () => 0;
 	const indexOf = new Map(free.map((node, index) => [node, index]));
-	const matrix = portMatrix(
+	const matrix = createPorts(
 		factor,
 		free.map((node) => freeOf[node])
 	);

@@ -1,37 +1,33 @@
 import { extendMemory } from './factor-memory.ts';
 import type { CholeskyFactor } from './factorise.ts';
 
-/** Entries of the inverse between a few rows, the ports. */
-export interface PortMatrix {
+/**
+ * A few rows of the matrix, the ports, with w = L^-1 e of each, which is nonzero only on the way from
+ * its supernode to the root.
+ */
+export interface Ports {
 	/** Entry of A^-1 between ports a and b, indices into the rows that were given. */
 	at(a: number, b: number): number;
 	/** All entries by rows, symmetric. Length ports * ports. */
 	all(): Float64Array;
+	/** Adds `scale` times w of a port to y, n doubles in the new numbering. */
+	addTo(y: Float64Array, port: number, scale: number): void;
 }
 
 /**
- * The inverse between the given rows of the matrix, entry by entry as it is asked for. With
- * w = L^-1 e of each port, which is nonzero only on the way from its supernode to the root, an entry
- * is the dot product of two of them over the common end of their ways (T. A. Davis, Direct Methods
- * for Sparse Linear Systems, 2006, chapter 3 for the sparse triangular solve).
+ * The inverse between the given rows of the matrix, entry by entry as it is asked for: an entry is
+ * the dot product of two ports' w over the common end of their ways (T. A. Davis, Direct Methods for
+ * Sparse Linear Systems, 2006, chapter 3, for the sparse triangular solve).
  *
  * @param rows of the matrix, each any number of times
  */
-export function portMatrix(factor: CholeskyFactor, rows: ArrayLike<number>): PortMatrix {
+export function createPorts(factor: CholeskyFactor, rows: ArrayLike<number>): Ports {
 	const { symbolic, space } = factor;
-	const { n, iperm, start, parent, supernodes } = symbolic;
-	const { kernels, layout } = space;
+	const { n, iperm, start, parent } = symbolic;
+	const { kernels, layout, memory } = space;
 	const count = rows.length;
-	const supernode = Int32Array.from(rows, (row) => supernodeOf(start, supernodes, iperm[row]));
-	/** Columns on the way of each supernode that a port needs, itself included, from the root down. */
-	const lengths = new Map<number, number>();
-	const lengthOf = (s: number): number => {
-		const known = lengths.get(s);
-		if (known !== undefined) return known;
-		const above = parent[s] === -1 ? 0 : lengthOf(parent[s]);
-		lengths.set(s, above + start[s + 1] - start[s]);
-		return above + start[s + 1] - start[s];
-	};
+	const supernode = Int32Array.from(rows, (row) => supernodeOf(start, iperm[row]));
+	const lengthOf = wayLengths(start, parent);
 	let values = 0;
 	const offset = Float64Array.from(supernode, (s) => {
 		const from = values;
@@ -39,16 +35,15 @@ export function portMatrix(factor: CholeskyFactor, rows: ArrayLike<number>): Por
 		return from;
 	});
 	const vectorsAt = extendMemory(space, 8 * values);
-	const vectors = new Float64Array(space.memory.buffer, vectorsAt, values);
-	const y = new Float64Array(space.memory.buffer, layout.ownY, n);
+	const y = new Float64Array(memory.buffer, layout.ownY, n);
+	const vectors = new Float64Array(memory.buffer, vectorsAt, values);
 	y.fill(0);
 	for (let p = 0; p < count; p++) {
 		y[iperm[rows[p]]] = 1;
 		kernels.forwardPath(supernode[p], layout.ownY);
 		for (let s = supernode[p]; s !== -1; s = parent[s]) {
-			const width = start[s + 1] - start[s];
 			const own = y.subarray(start[s], start[s + 1]);
-			vectors.set(own, offset[p] + lengthOf(s) - width);
+			vectors.set(own, offset[p] + lengthOf(s) - own.length);
 			own.fill(0);
 		}
 	}
@@ -57,15 +52,8 @@ export function portMatrix(factor: CholeskyFactor, rows: ArrayLike<number>): Por
 	function at(a: number, b: number): number {
 		const kept = known[a * count + b];
 		if (!Number.isNaN(kept)) return kept;
-		const common = meeting(parent, supernode[a], supernode[b]);
-		const value =
-			common === -1
-				? 0
-				: kernels.dotProduct(
-						vectorsAt + 8 * offset[a],
-						vectorsAt + 8 * offset[b],
-						lengthOf(common)
-					);
+		const common = lengthOf(meeting(parent, supernode[a], supernode[b]));
+		const value = kernels.dotProduct(vectorsAt + 8 * offset[a], vectorsAt + 8 * offset[b], common);
 		known[a * count + b] = value;
 		known[b * count + a] = value;
 		return value;
@@ -76,14 +64,34 @@ export function portMatrix(factor: CholeskyFactor, rows: ArrayLike<number>): Por
 		all() {
 			for (let a = 0; a < count; a++) for (let b = 0; b <= a; b++) at(a, b);
 			return known;
+		},
+		addTo(target, port, scale) {
+			const all = new Float64Array(memory.buffer, vectorsAt, values);
+			for (let s = supernode[port]; s !== -1; s = parent[s]) {
+				const first = start[s];
+				const from = offset[port] + lengthOf(s) - (start[s + 1] - first);
+				for (let j = first; j < start[s + 1]; j++) target[j] += scale * all[from + j - first];
+			}
 		}
 	};
 }
 
+/** Columns on the way of a supernode to the root, its own included; 0 for none (-1). */
+function wayLengths(start: Int32Array, parent: Int32Array): (supernode: number) => number {
+	const lengths = new Map([[-1, 0]]);
+	return function lengthOf(s: number): number {
+		const known = lengths.get(s);
+		if (known !== undefined) return known;
+		const length = lengthOf(parent[s]) + start[s + 1] - start[s];
+		lengths.set(s, length);
+		return length;
+	};
+}
+
 /** The supernode that a column belongs to. */
-function supernodeOf(start: Int32Array, supernodes: number, column: number): number {
+function supernodeOf(start: Int32Array, column: number): number {
 	let low = 0;
-	let high = supernodes - 1;
+	let high = start.length - 2;
 	while (low < high) {
 		const middle = (low + high + 1) >> 1;
 		if (start[middle] <= column) low = middle;

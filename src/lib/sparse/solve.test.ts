@@ -4,7 +4,7 @@ import { assemble, factorOf, graphs, lattice } from '../../../tests/support/grap
 import {
 	orderMinimumDegree,
 	orderNestedDissection,
-	portMatrix,
+	createPorts,
 	refine,
 	relativeResidual,
 	solveBlockWith,
@@ -97,7 +97,7 @@ describe('entries of the inverse between ports', () => {
 						: orderMinimumDegree(matrix);
 					const factor = factorOf(matrix, order);
 					const rows = picks.map((pick) => pick % graph.n);
-					const ports = portMatrix(factor, rows);
+					const ports = createPorts(factor, rows);
 					const all = ports.all();
 					rows.forEach((row, a) => {
 						const ampere = new Float64Array(graph.n);

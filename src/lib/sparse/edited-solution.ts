@@ -1,0 +1,105 @@
+import { LuDecomposition, Matrix } from 'ml-matrix';
+import type { CholeskyFactor } from './factorise.ts';
+import type { Ports } from './ports.ts';
+import { backwardWith, forwardWith } from './solve.ts';
+
+/** A change of conductance from one place to the reference: adds siemens * e e^T to the matrix. */
+export interface ConductanceEdit {
+	/** e: ports and their weights. A place between two nodes has two. */
+	readonly place: readonly (readonly [port: number, weight: number])[];
+	/** Positive for what is added, negative for what is taken away. */
+	readonly siemens: number;
+}
+
+/** The solution of an edited system. */
+export interface EditedSolution {
+	/** The answer at a port. */
+	at(port: number): number;
+	/** The whole answer by rows of the matrix: one backward substitution. Length n. */
+	all(): Float64Array;
+}
+
+/** Smallest pivot of the edits' equations against their largest entry: what is lost stays below it. */
+const LEAST_PIVOT = 1e-9;
+
+/** A solution that is kept so that small edits of its matrix are answered without a new factor. */
+export interface EditableSolution {
+	/** The answer of the matrix as it was factored, by rows. Length n. */
+	readonly solution: Float64Array;
+	/**
+	 * The answer after the edits, all of them counted from the factored matrix; null where they leave
+	 * it singular, or so nearly that too many digits are lost: factor it anew.
+	 */
+	edited(edits: readonly ConductanceEdit[]): EditedSolution | null;
+}
+
+/**
+ * Solves A x = b and (A + E D E^T) x' = b for edits E D E^T of a few ports (M. A. Woodbury, Inverting
+ * modified matrices, Statistical Research Group Memo 42, Princeton 1950; W. W. Hager, SIAM Review 31
+ * (1989) 221): x' = x - A^-1 E c with (D^-1 + E^T A^-1 E) c = E^T x. The forward half of x is kept,
+ * so that all of x' costs a backward substitution.
+ *
+ * @param ports of the factor; all places of edits are among them
+ * @param rows of the matrix that the ports stand for, as given to `createPorts`
+ */
+export function createEditableSolution(
+	factor: CholeskyFactor,
+	ports: Ports,
+	rows: ArrayLike<number>,
+	b: Float64Array
+): EditableSolution {
+	const { n } = factor.symbolic;
+	const forward = forwardWith(factor, b, new Float64Array(n));
+	const solution = backwardWith(factor, forward, new Float64Array(n));
+
+	function edited(edits: readonly ConductanceEdit[]): EditedSolution | null {
+		const active = edits.filter(({ siemens }) => siemens !== 0);
+		const currents = active.length === 0 ? [] : editCurrents(active, ports, rows, solution);
+		if (currents === null) return null;
+		const sources = active.flatMap(({ place }, e) =>
+			place.map(([port, weight]) => ({ port, amps: -weight * currents[e] }))
+		);
+		return {
+			at: (port) =>
+				sources.reduce(
+					(sum, source) => sum + ports.at(port, source.port) * source.amps,
+					solution[rows[port]]
+				),
+			all() {
+				const half = forward.slice();
+				for (const { port, amps } of sources) ports.addTo(half, port, amps);
+				return backwardWith(factor, half, new Float64Array(n));
+			}
+		};
+	}
+
+	return { solution, edited };
+}
+
+/** c of `createEditableSolution`: what each edit takes out of its place. */
+function editCurrents(
+	edits: readonly ConductanceEdit[],
+	ports: Ports,
+	rows: ArrayLike<number>,
+	solution: Float64Array
+): number[] | null {
+	const small = new Matrix(
+		edits.map((row, e) =>
+			edits.map((column, f) => {
+				let sum = e === f ? 1 / row.siemens : 0;
+				for (const [a, weightA] of row.place) {
+					for (const [b, weightB] of column.place) sum += weightA * weightB * ports.at(a, b);
+				}
+				return sum;
+			})
+		)
+	);
+	const right = edits.map(({ place }) =>
+		place.reduce((sum, [port, weight]) => sum + weight * solution[rows[port]], 0)
+	);
+	const lu = new LuDecomposition(small);
+	const pivots = lu.upperTriangularMatrix.diagonal().map(Math.abs);
+	const largest = Math.max(...small.to1DArray().map(Math.abs));
+	if (Math.min(...pivots) < LEAST_PIVOT * largest) return null;
+	return lu.solve(Matrix.columnVector(right)).to1DArray();
+}
