@@ -19,7 +19,7 @@ export interface EditedSolution {
 	all(): Float64Array;
 }
 
-/** Smallest pivot of the edits' equations against their largest entry: what is lost stays below it. */
+/** Smallest pivot of the scaled equations of the edits: fewer digits than this leaves are too few. */
 const LEAST_PIVOT = 1e-9;
 
 /** A solution that is kept so that small edits of its matrix are answered without a new factor. */
@@ -83,23 +83,32 @@ function editCurrents(
 	rows: ArrayLike<number>,
 	solution: Float64Array
 ): number[] | null {
+	const between = (row: ConductanceEdit, column: ConductanceEdit) => {
+		let sum = 0;
+		for (const [a, weightA] of row.place) {
+			for (const [b, weightB] of column.place) sum += weightA * weightB * ports.at(a, b);
+		}
+		return sum;
+	};
+	// Scaled so that what the diagonal is the sum of is of size 1: pivots tell what cancelled.
+	const scale = edits.map(
+		(edit) => 1 / Math.sqrt(Math.abs(1 / edit.siemens) + between(edit, edit))
+	);
 	const small = new Matrix(
 		edits.map((row, e) =>
-			edits.map((column, f) => {
-				let sum = e === f ? 1 / row.siemens : 0;
-				for (const [a, weightA] of row.place) {
-					for (const [b, weightB] of column.place) sum += weightA * weightB * ports.at(a, b);
-				}
-				return sum;
-			})
+			edits.map(
+				(column, f) =>
+					scale[e] * scale[f] * ((e === f ? 1 / row.siemens : 0) + between(row, column))
+			)
 		)
 	);
-	const right = edits.map(({ place }) =>
-		place.reduce((sum, [port, weight]) => sum + weight * solution[rows[port]], 0)
+	const right = edits.map(
+		({ place }, e) =>
+			scale[e] * place.reduce((sum, [port, weight]) => sum + weight * solution[rows[port]], 0)
 	);
 	const lu = new LuDecomposition(small);
 	const pivots = lu.upperTriangularMatrix.diagonal().map(Math.abs);
-	const largest = Math.max(...small.to1DArray().map(Math.abs));
-	if (Math.min(...pivots) < LEAST_PIVOT * largest) return null;
-	return lu.solve(Matrix.columnVector(right)).to1DArray();
+	if (Math.min(...pivots) < LEAST_PIVOT) return null;
+	const scaled = lu.solve(Matrix.columnVector(right)).to1DArray();
+	return scaled.map((value, e) => value * scale[e]);
 }
