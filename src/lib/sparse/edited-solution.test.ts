@@ -49,6 +49,20 @@ describe('an edited solution', () => {
 		);
 	});
 
+	it('answers many cases at once as each alone', () => {
+		const rows = Array.from({ length: 21 }, (_, k) => 11 * k);
+		const ports = createPorts(factor, rows);
+		const editable = createEditableSolution(factor, ports, rows, b);
+		const cases = rows.map((_, port): ConductanceEdit[] => [{ place: [[port, 1]], siemens: -2 }]);
+		const seen: number[] = [];
+		editable.eachEdited(cases, (index, x) => {
+			seen.push(index);
+			const alone = editable.edited(cases[index])?.all();
+			alone?.forEach((value, i) => expect(x[i]).toBeCloseTo(value, 12));
+		});
+		expect(seen).toEqual(rows.map((_, k) => k));
+	});
+
 	it('takes a place between two nodes by its weights', () => {
 		const rows = [40, 41];
 		const siemens = 3;

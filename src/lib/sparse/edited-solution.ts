@@ -1,6 +1,7 @@
 import { LuDecomposition, Matrix } from 'ml-matrix';
 import type { CholeskyFactor } from './factorise.ts';
 import type { Ports } from './ports.ts';
+import { backwardBlockWith } from './solve-block.ts';
 import { backwardWith, forwardWith } from './solve.ts';
 
 /** A change of conductance from one place to the reference: adds siemens * e e^T to the matrix. */
@@ -31,6 +32,14 @@ export interface EditableSolution {
 	 * it singular, or so nearly that too many digits are lost: factor it anew.
 	 */
 	edited(edits: readonly ConductanceEdit[]): EditedSolution | null;
+	/**
+	 * The whole answers of many cases of edits, some at a time through the factor. Each is handed to
+	 * `answer` in a buffer that the next one overwrites; a case that is singular is left out.
+	 */
+	eachEdited(
+		cases: readonly (readonly ConductanceEdit[])[],
+		answer: (index: number, x: Float64Array) => void
+	): void;
 }
 
 /**
@@ -48,32 +57,63 @@ export function createEditableSolution(
 	rows: ArrayLike<number>,
 	b: Float64Array
 ): EditableSolution {
-	const { n } = factor.symbolic;
-	const forward = forwardWith(factor, b, new Float64Array(n));
-	const solution = backwardWith(factor, forward, new Float64Array(n));
+	const forward = forwardWith(factor, b);
+	const solution = backwardWith(factor, forward);
 
-	function edited(edits: readonly ConductanceEdit[]): EditedSolution | null {
+	/** What the edits take out at the ports, as sources there; null where they are singular. */
+	function sourcesOf(edits: readonly ConductanceEdit[]): readonly Source[] | null {
 		const active = edits.filter(({ siemens }) => siemens !== 0);
-		const currents = active.length === 0 ? [] : editCurrents(active, ports, rows, solution);
-		if (currents === null) return null;
-		const sources = active.flatMap(({ place }, e) =>
-			place.map(([port, weight]) => ({ port, amps: -weight * currents[e] }))
+		if (active.length === 0) return [];
+		const currents = editCurrents(active, ports, rows, solution);
+		return (
+			currents &&
+			active.flatMap(({ place }, e) =>
+				place.map(([port, weight]) => ({ port, amps: -weight * currents[e] }))
+			)
 		);
-		return {
-			at: (port) =>
-				sources.reduce(
-					(sum, source) => sum + ports.at(port, source.port) * source.amps,
-					solution[rows[port]]
-				),
-			all() {
-				const half = forward.slice();
-				for (const { port, amps } of sources) ports.addTo(half, port, amps);
-				return backwardWith(factor, half, new Float64Array(n));
-			}
-		};
 	}
 
-	return { solution, edited };
+	function addSources(half: Float64Array, sources: readonly Source[]): void {
+		half.set(forward);
+		for (const { port, amps } of sources) ports.addTo(half, port, amps);
+	}
+
+	return {
+		solution,
+		edited(edits) {
+			const sources = sourcesOf(edits);
+			if (sources === null) return null;
+			return {
+				at: (port) =>
+					sources.reduce(
+						(sum, source) => sum + ports.at(port, source.port) * source.amps,
+						solution[rows[port]]
+					),
+				all() {
+					const half = new Float64Array(forward.length);
+					addSources(half, sources);
+					return backwardWith(factor, half);
+				}
+			};
+		},
+		eachEdited(cases, answer) {
+			const solvable = cases.flatMap((edits, index) => {
+				const sources = sourcesOf(edits);
+				return sources === null ? [] : [{ index, sources }];
+			});
+			backwardBlockWith(
+				factor,
+				solvable.length,
+				(k, half) => addSources(half, solvable[k].sources),
+				(k, x) => answer(solvable[k].index, x)
+			);
+		}
+	};
+}
+
+interface Source {
+	readonly port: number;
+	readonly amps: number;
 }
 
 /** c of `createEditableSolution`: what each edit takes out of its place. */

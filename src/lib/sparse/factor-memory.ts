@@ -8,6 +8,7 @@ import {
 	type KernelCall,
 	type Kernels
 } from './kernels.ts';
+import type { Unknowns } from './substitute.ts';
 import type { Ranges, WorkSplit } from './work-split.ts';
 
 /** Stacks of update matrices of one thread, values. */
@@ -73,8 +74,8 @@ export interface FactorMemory {
 	readonly kernels: Kernels;
 	/** Bytes in use: the layout's, and what `extendMemory` added. */
 	usedBytes: number;
-	/** Where the lanes of a block of right-hand sides lie, 0 before the first block. */
-	lanesAt: number;
+	/** Where the lanes of a block of right-hand sides lie, once there was one. */
+	lanes?: Unknowns;
 }
 
 /** Depth in the tree, lowest bit. */
@@ -201,7 +202,7 @@ export function createFactorMemory(symbolic: SymbolicFactor, layout: FactorLayou
 		new Int32Array(buffer, layout.previousSibling, symbolic.supernodes)
 	);
 	const kernels = bindKernels(memory, isShared);
-	return { memory, isShared, layout, kernels, usedBytes: layout.bytes, lanesAt: 0 };
+	return { memory, isShared, layout, kernels, usedBytes: layout.bytes };
 }
 
 /**

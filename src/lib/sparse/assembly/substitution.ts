@@ -96,13 +96,23 @@ export function forwardLanes(from: i32, to: i32, y: usize): void {
 		const height = heightOf(s);
 		const list = rows + ((<usize>getI32(rowStart, s)) << 2);
 		const own = y + ((<usize>getI32(start, s)) << LANES_SHIFT);
+		const stride = doubles(width);
 		let row = panelOf(s);
-		for (let i = 0; i < height; i++) {
-			const at = y + ((<usize>getI32(list, i)) << LANES_SHIFT);
-			const isOwn = i < width;
-			subtractDotLanes(at, row, own, isOwn ? i : width);
-			if (isOwn) scaleLanes(at, 1 / getF64(row, i));
-			row += doubles(width);
+		let i = 0;
+		for (; i < width; i++) {
+			const at = own + ((<usize>i) << LANES_SHIFT);
+			subtractDots(at, row, own, i);
+			scaleLanes(at, 1 / getF64(row, i));
+			row += stride;
+		}
+		for (; i + 2 <= height; i += 2) {
+			const at0 = y + ((<usize>getI32(list, i)) << LANES_SHIFT);
+			const at1 = y + ((<usize>getI32(list, i + 1)) << LANES_SHIFT);
+			subtractTwoDots(at0, at1, row, row + stride, own, width);
+			row += 2 * stride;
+		}
+		if (i < height) {
+			subtractDots(y + ((<usize>getI32(list, i)) << LANES_SHIFT), row, own, width);
 		}
 	}
 }
@@ -111,15 +121,27 @@ export function forwardLanes(from: i32, to: i32, y: usize): void {
 export function backwardLanes(from: i32, to: i32, y: usize): void {
 	for (let s = to - 1; s >= from; s--) {
 		const width = widthOf(s);
+		const height = heightOf(s);
 		const list = rows + ((<usize>getI32(rowStart, s)) << 2);
 		const own = y + ((<usize>getI32(start, s)) << LANES_SHIFT);
-		let row = panelOf(s) + <usize>heightOf(s) * doubles(width);
-		for (let i = heightOf(s) - 1; i >= 0; i--) {
-			row -= doubles(width);
-			const at = y + ((<usize>getI32(list, i)) << LANES_SHIFT);
-			const isOwn = i < width;
-			if (isOwn) scaleLanes(at, 1 / getF64(row, i));
-			subtractScaledLanes(own, row, at, isOwn ? i : width);
+		const stride = doubles(width);
+		let row = panelOf(s) + <usize>width * stride;
+		let i = width;
+		for (; i + 2 <= height; i += 2) {
+			const at0 = y + ((<usize>getI32(list, i)) << LANES_SHIFT);
+			const at1 = y + ((<usize>getI32(list, i + 1)) << LANES_SHIFT);
+			subtractTwoScaled(own, row, row + stride, at0, at1, width);
+			row += 2 * stride;
+		}
+		if (i < height) {
+			subtractScaledLanes(own, row, y + ((<usize>getI32(list, i)) << LANES_SHIFT), width);
+		}
+		row = panelOf(s) + <usize>width * stride;
+		for (i = width - 1; i >= 0; i--) {
+			row -= stride;
+			const at = own + ((<usize>i) << LANES_SHIFT);
+			scaleLanes(at, 1 / getF64(row, i));
+			subtractScaledLanes(own, row, at, i);
 		}
 	}
 }
@@ -133,7 +155,7 @@ function scaleLanes(at: usize, factor: f64): void {
 }
 
 /** Lanes at `at` less the `count` factors of a row times the lanes of the own unknowns. */
-function subtractDotLanes(at: usize, row: usize, own: usize, count: i32): void {
+function subtractDots(at: usize, row: usize, own: usize, count: i32): void {
 	let s0 = v128.load(at);
 	let s1 = v128.load(at, 16);
 	let s2 = v128.load(at, 32);
@@ -153,6 +175,51 @@ function subtractDotLanes(at: usize, row: usize, own: usize, count: i32): void {
 	v128.store(at, s3, 48);
 }
 
+/** The same for two rows: the own unknowns are read once. */
+function subtractTwoDots(
+	at0: usize,
+	at1: usize,
+	row0: usize,
+	row1: usize,
+	own: usize,
+	count: i32
+): void {
+	let s0 = v128.load(at0);
+	let s1 = v128.load(at0, 16);
+	let s2 = v128.load(at0, 32);
+	let s3 = v128.load(at0, 48);
+	let t0 = v128.load(at1);
+	let t1 = v128.load(at1, 16);
+	let t2 = v128.load(at1, 32);
+	let t3 = v128.load(at1, 48);
+	const bytes = doubles(count);
+	for (let k: usize = 0; k < bytes; k += 8) {
+		const l = v128.load64_splat(row0 + k);
+		const m = v128.load64_splat(row1 + k);
+		const v0 = v128.load(own);
+		s0 = f64x2.sub(s0, f64x2.mul(l, v0));
+		t0 = f64x2.sub(t0, f64x2.mul(m, v0));
+		const v1 = v128.load(own, 16);
+		s1 = f64x2.sub(s1, f64x2.mul(l, v1));
+		t1 = f64x2.sub(t1, f64x2.mul(m, v1));
+		const v2 = v128.load(own, 32);
+		s2 = f64x2.sub(s2, f64x2.mul(l, v2));
+		t2 = f64x2.sub(t2, f64x2.mul(m, v2));
+		const v3 = v128.load(own, 48);
+		s3 = f64x2.sub(s3, f64x2.mul(l, v3));
+		t3 = f64x2.sub(t3, f64x2.mul(m, v3));
+		own += 64;
+	}
+	v128.store(at0, s0);
+	v128.store(at0, s1, 16);
+	v128.store(at0, s2, 32);
+	v128.store(at0, s3, 48);
+	v128.store(at1, t0);
+	v128.store(at1, t1, 16);
+	v128.store(at1, t2, 32);
+	v128.store(at1, t3, 48);
+}
+
 /** Lanes of the own unknowns less the `count` factors of a row times the lanes at `at`. */
 function subtractScaledLanes(own: usize, row: usize, at: usize, count: i32): void {
 	const v0 = v128.load(at);
@@ -166,6 +233,39 @@ function subtractScaledLanes(own: usize, row: usize, at: usize, count: i32): voi
 		v128.store(own, f64x2.sub(v128.load(own, 16), f64x2.mul(l, v1)), 16);
 		v128.store(own, f64x2.sub(v128.load(own, 32), f64x2.mul(l, v2)), 32);
 		v128.store(own, f64x2.sub(v128.load(own, 48), f64x2.mul(l, v3)), 48);
+		own += 64;
+	}
+}
+
+/** The same for two rows: the own unknowns are read and written once. */
+function subtractTwoScaled(
+	own: usize,
+	row0: usize,
+	row1: usize,
+	at0: usize,
+	at1: usize,
+	count: i32
+): void {
+	const v0 = v128.load(at0);
+	const v1 = v128.load(at0, 16);
+	const v2 = v128.load(at0, 32);
+	const v3 = v128.load(at0, 48);
+	const w0 = v128.load(at1);
+	const w1 = v128.load(at1, 16);
+	const w2 = v128.load(at1, 32);
+	const w3 = v128.load(at1, 48);
+	const bytes = doubles(count);
+	for (let k: usize = 0; k < bytes; k += 8) {
+		const l = v128.load64_splat(row0 + k);
+		const m = v128.load64_splat(row1 + k);
+		const a = f64x2.add(f64x2.mul(l, v0), f64x2.mul(m, w0));
+		v128.store(own, f64x2.sub(v128.load(own), a));
+		const b = f64x2.add(f64x2.mul(l, v1), f64x2.mul(m, w1));
+		v128.store(own, f64x2.sub(v128.load(own, 16), b), 16);
+		const c = f64x2.add(f64x2.mul(l, v2), f64x2.mul(m, w2));
+		v128.store(own, f64x2.sub(v128.load(own, 32), c), 32);
+		const d = f64x2.add(f64x2.mul(l, v3), f64x2.mul(m, w3));
+		v128.store(own, f64x2.sub(v128.load(own, 48), d), 48);
 		own += 64;
 	}
 }
