@@ -1,158 +1,32 @@
 /**
- * Times the sparse solver on a grid of a wanted size, or on a system from Matrix Market files.
- * Prints one line of JSON; reading and writing files is not counted.
+ * Times the sparse solver on a grid of a wanted size, or on a system from Matrix Market files; with
+ * `--edits` and `--studies` what follows on its kept factor. Prints one line of JSON for each;
+ * reading and writing files is not counted.
  */
-import { performance } from 'node:perf_hooks';
+import { availableParallelism } from 'node:os';
 import { parseArgs } from 'node:util';
-import { meshFloorplan, resistancesAt } from '#lib/mesh/index.ts';
+import { relativeResidual } from '#lib/sparse/index.ts';
+import { WorkerThread } from '#lib/threads/index.ts';
+import { timeEdits, timeStudies } from './bench-edits.ts';
+import { BENCH_CASES, type BenchCase } from './bench-plan.ts';
+import { solveSystem, type Solved } from './bench-solve.ts';
+import { peakMb, spreadOf } from './bench-statistics.ts';
 import {
-	analyse,
-	assembleLaplacian,
-	factorise,
-	orderMinimumDegree,
-	orderNestedDissection,
-	planAssembly,
-	relativeResidual,
-	solveWith,
-	type SymmetricMatrix
-} from '#lib/sparse/index.ts';
-import { BENCH_CASES, makeBenchPlan, type BenchCase } from './bench-plan.ts';
-import {
-	MatrixFileError,
-	readColumns,
-	readMatrix,
-	writeColumns,
-	writeMatrix
-} from './matrix-market.ts';
-import { EXIT_SOLVED, failWith, problemLines, runCommand } from './plan-input.ts';
+	systemOfFiles,
+	systemOfPlan,
+	writeSystem,
+	type PlanSystem,
+	type System
+} from './bench-system.ts';
+import { MatrixFileError, writeColumns } from './matrix-market.ts';
+import { EXIT_SOLVED, failWith, runCommand } from './plan-input.ts';
 
 const USAGE =
-	'bench -- [--nodes N] [--case uniform|irregular|strong] [--json] [--dump A.mtx b.mtx xy.mtx] | --matrix A.mtx --rhs b.mtx [--coords xy.mtx] [--out x.mtx]';
-/** Name of the method by its elimination order. */
-const METHODS = {
-	dissection: 'multifrontal Cholesky on nested dissection, plain typed arrays',
-	degree: 'multifrontal Cholesky on minimum degree, plain typed arrays'
-} as const;
+	'bench -- [--nodes N] [--case uniform|irregular|strong] [--threads 1|2] [--repeats N] [--edits] [--studies] [--json] [--dump A.mtx b.mtx xy.mtx] | --matrix A.mtx --rhs b.mtx [--coords xy.mtx] [--out x.mtx]';
 const DEFAULT_NODES = 1_000_000;
-
-/** Coordinates of the unknowns. */
-interface Places {
-	readonly x: ArrayLike<number>;
-	readonly y: ArrayLike<number>;
-}
-
-interface System {
-	readonly matrix: SymmetricMatrix;
-	readonly b: Float64Array;
-	readonly places: Places | null;
-	readonly buildSeconds: number;
-}
-
-function seconds(): number {
-	return performance.now() / 1000;
-}
-
-function megabytes(bytes: number): string {
-	return `${Math.ceil(bytes / 2 ** 20)} MB`;
-}
-
-/** The linear system of a bench plan: conductances of the grid, regulators tied to their set points. */
-function systemOfPlan(nodes: number, kind: BenchCase): System & { readonly places: Places } {
-	const floorplan = makeBenchPlan(nodes, kind);
-	const begin = seconds();
-	const meshed = meshFloorplan(floorplan);
-	if (meshed.status === 'refused') throw new Error(problemLines(meshed.problems).join('; '));
-	const { network } = meshed;
-	const resistances = resistancesAt(network, floorplan, floorplan.corners[0]);
-	if (resistances.status === 'refused') {
-		throw new Error(problemLines(resistances.problems).join('; '));
-	}
-	const { resistors, regulators, loads } = network;
-	const tie = new Float64Array(network.nodes.count);
-	const outputOhm = floorplan.cells[0].outputOhm;
-	for (const node of regulators.outputNode) if (node >= 0) tie[node] += 1 / outputOhm;
-	const conductance = resistances.ohm.map((ohm) => 1 / ohm);
-	const plan = planAssembly(network.nodes.count, resistors.from, resistors.to);
-	const matrix = assembleLaplacian(plan, conductance, tie);
-	const b = new Float64Array(network.nodes.count);
-	for (let k = 0; k < loads.count; k++) {
-		b[loads.node[k]] += loads.share[k] * (floorplan.blocks[loads.block[k]].amps.run ?? 0);
-	}
-	const { xNm, yNm } = network.nodes;
-	return { matrix, b, places: { x: xNm, y: yNm }, buildSeconds: seconds() - begin };
-}
-
-/** The system of a bench plan, written to Matrix Market files where their names are given. */
-async function systemOfCase(
-	nodes: number,
-	kind: BenchCase,
-	matrixPath: string | undefined,
-	[rhsPath, coordsPath]: readonly string[]
-): Promise<System> {
-	const system = systemOfPlan(nodes, kind);
-	if (matrixPath !== undefined) {
-		await writeMatrix(matrixPath, system.matrix);
-		await writeColumns(rhsPath, [system.b]);
-		await writeColumns(coordsPath, [system.places.x, system.places.y]);
-	}
-	return system;
-}
-
-async function systemOfFiles(
-	matrixPath: string,
-	rhsPath: string,
-	coordsPath?: string
-): Promise<System> {
-	const matrix = await readMatrix(matrixPath);
-	const [b] = await readColumns(rhsPath, 1);
-	if (b.length !== matrix.n) {
-		throw new MatrixFileError(`${rhsPath}: ${b.length} values (expected ${matrix.n})`);
-	}
-	if (coordsPath === undefined) return { matrix, b, places: null, buildSeconds: 0 };
-	const [x, y] = await readColumns(coordsPath, 2);
-	if (x.length !== matrix.n) {
-		throw new MatrixFileError(`${coordsPath}: ${x.length} rows (expected ${matrix.n})`);
-	}
-	return { matrix, b, places: { x, y }, buildSeconds: 0 };
-}
-
-/** Solves a system from its matrix to its answer and times the phases. */
-function time({ matrix, b, places, buildSeconds }: System, kind: BenchCase | 'matrix') {
-	const begin = seconds();
-	const order = places
-		? orderNestedDissection(matrix, places.x, places.y)
-		: orderMinimumDegree(matrix);
-	const symbolic = analyse(matrix, order);
-	const analysed = seconds();
-	const result = factorise(symbolic, matrix, { limitBytes: process.availableMemory() });
-	const factored = seconds();
-	if (result.status === 'not-positive-definite') {
-		return `the matrix is not positive definite at row ${result.row + 1} (expected a symmetric positive definite one)`;
-	}
-	if (result.status === 'too-large') {
-		return `its factor takes ${megabytes(result.bytes)} (expected at most the ${megabytes(result.limitBytes)} that are free)`;
-	}
-	const solution = solveWith(result.factor, b);
-	const solved = seconds();
-	const line = {
-		nodes: matrix.n,
-		nonzeros: matrix.column.length,
-		case: kind,
-		threads: 1,
-		method: places ? METHODS.dissection : METHODS.degree,
-		seconds: {
-			build: buildSeconds,
-			analyse: analysed - begin,
-			factor: factored - analysed,
-			solve: solved - factored,
-			total: buildSeconds + solved - begin
-		},
-		iterations: 0,
-		residual: relativeResidual(matrix, solution, b),
-		peakMb: process.resourceUsage().maxRSS / 1024
-	};
-	return { line, solution };
-}
+const MOST_THREADS = 2;
+/** Edits of each kind that are timed. */
+const EDIT_REPEATS = 60;
 
 function readArguments() {
 	return parseArgs({
@@ -167,9 +41,71 @@ function readArguments() {
 			rhs: { type: 'string' },
 			coords: { type: 'string' },
 			out: { type: 'string' },
-			dump: { type: 'string' }
+			dump: { type: 'string' },
+			threads: { type: 'string' },
+			repeats: { type: 'string' },
+			edits: { type: 'boolean', default: false },
+			studies: { type: 'boolean', default: false }
 		}
 	});
+}
+
+type Source =
+	| { readonly kind: 'matrix'; readonly system: System }
+	| { readonly kind: BenchCase; readonly make: () => PlanSystem };
+
+function print(line: object): void {
+	process.stdout.write(`${JSON.stringify(line)}\n`);
+}
+
+/** The number of an option that is not given, or null where it is no whole number of 1 or more. */
+function wholeNumber(text: string | undefined, fallback: number): number | null {
+	if (text === undefined) return fallback;
+	const value = Number(text);
+	return Number.isInteger(value) && value >= 1 ? value : null;
+}
+
+/**
+ * Solves the system so many times in this process, each time from the plan where there is one; the
+ * seconds are medians, and `p95` where there were repeats. A text where it cannot be solved.
+ */
+function timeSolves(source: Source, repeats: number, secondThread: WorkerThread | null) {
+	const runs: { build: number; analyse: number; factor: number; solve: number; total: number }[] =
+		[];
+	/** What a round leaves is dropped before the next, so that it is no part of that one's memory. */
+	let last: { system: System; planSystem: PlanSystem | null; solved: Solved } | null = null;
+	for (let round = 0; round < repeats; round++) {
+		last = null;
+		const planSystem = source.kind === 'matrix' ? null : source.make();
+		const system = source.kind === 'matrix' ? source.system : planSystem;
+		if (!system) continue;
+		const solved = solveSystem(system, secondThread);
+		if (typeof solved === 'string') return solved;
+		const { analyse, factor, solve } = solved.seconds;
+		const build = system.buildSeconds;
+		runs.push({ build, analyse, factor, solve, total: build + analyse + factor + solve });
+		last = { system, planSystem, solved };
+	}
+	if (!last) throw new Error('nothing was solved');
+	const { system, solved } = last;
+	const phases = ['build', 'analyse', 'factor', 'solve', 'total'] as const;
+	const spread = phases.map((phase) => spreadOf(runs.map((run) => run[phase])));
+	const secondsOf = (which: 'median' | 'p95') =>
+		Object.fromEntries(phases.map((phase, k) => [phase, spread[k][which]]));
+	const { matrix, b } = system;
+	const line = {
+		nodes: matrix.n,
+		nonzeros: matrix.column.length,
+		case: source.kind,
+		threads: solved.threads,
+		method: solved.method,
+		seconds: secondsOf('median'),
+		...(repeats > 1 && { repeats, p95: secondsOf('p95') }),
+		iterations: 0,
+		residual: relativeResidual(matrix, solved.solution, b),
+		peakMb: peakMb()
+	};
+	return { line, ...last };
 }
 
 async function bench(): Promise<number> {
@@ -202,16 +138,36 @@ async function bench(): Promise<number> {
 			`arguments: unexpected ${positionals.join(' ') || 'end'} (expected ${USAGE})`
 		]);
 	}
+	const threads = wholeNumber(values.threads, Math.min(MOST_THREADS, availableParallelism()));
+	if (threads === null || threads > MOST_THREADS) {
+		return failWith([`--threads: ${values.threads} (expected 1 or ${MOST_THREADS})`]);
+	}
+	const repeats = wholeNumber(values.repeats, 1);
+	if (repeats === null) {
+		return failWith([`--repeats: ${values.repeats} (expected a whole number of 1 or more)`]);
+	}
+	if (values.matrix !== undefined && (values.edits || values.studies)) {
+		return failWith(['--edits, --studies: need the plan of a case (expected no --matrix)']);
+	}
+	const secondThread = threads > 1 ? new WorkerThread() : null;
 	try {
 		const { matrix, rhs } = values;
-		const isFile = matrix !== undefined && rhs !== undefined;
-		const system = isFile
-			? await systemOfFiles(matrix, rhs, values.coords)
-			: await systemOfCase(nodes, kind, values.dump, positionals);
-		const timed = time(system, isFile ? 'matrix' : kind);
+		const dump = values.dump === undefined ? null : ([values.dump, ...positionals] as const);
+		const source: Source =
+			matrix !== undefined && rhs !== undefined
+				? { kind: 'matrix', system: await systemOfFiles(matrix, rhs, values.coords) }
+				: { kind, make: () => systemOfPlan(nodes, kind) };
+		const timed = timeSolves(source, repeats, secondThread);
 		if (typeof timed === 'string') return failWith([`${values.matrix ?? 'system'}: ${timed}`]);
-		if (values.out !== undefined) await writeColumns(values.out, [timed.solution]);
-		process.stdout.write(`${JSON.stringify(timed.line)}\n`);
+		const { system, solved, planSystem } = timed;
+		print(timed.line);
+		if (values.out !== undefined) await writeColumns(values.out, [solved.solution]);
+		if (dump && planSystem) await writeSystem(planSystem, [dump[0], dump[1], dump[2]]);
+		const about = { nodes: system.matrix.n, case: kind, threads: solved.threads };
+		if (values.studies && planSystem) print({ ...about, studies: timeStudies(planSystem, solved) });
+		if (values.edits && planSystem) {
+			print({ ...about, edits: timeEdits(planSystem, solved, EDIT_REPEATS) });
+		}
 		return EXIT_SOLVED;
 	} catch (error) {
 		if (error instanceof MatrixFileError) return failWith([error.message]);
@@ -221,6 +177,8 @@ async function bench(): Promise<number> {
 			]);
 		}
 		throw error;
+	} finally {
+		await secondThread?.stop();
 	}
 }
 

@@ -75,7 +75,30 @@ describe('bench', () => {
 		}
 	});
 
+	it('with repeats tells their spread; edits and studies have a line each', () => {
+		const { status, stdout } = bench('--nodes', '3000', '--repeats', '3', '--edits', '--studies');
+		expect(status).toBe(0);
+		const [solve, studies, edits] = stdout
+			.trimEnd()
+			.split('\n')
+			.map((line) => JSON.parse(line));
+		expect(solve.repeats).toBe(3);
+		expect(Object.keys(solve.p95)).toEqual(Object.keys(solve.seconds));
+		expect(Object.keys(studies.studies.ms)).toEqual([
+			'portMatrix',
+			'singleCurrents',
+			'pairCurrents',
+			'singleMaps',
+			'mismatchMaps'
+		]);
+		expect(Object.keys(edits.edits.ms)).toEqual(['moveCurrents', 'moveMap', 'loadMap', 'strapMap']);
+		expect(edits.edits.residual).toBeLessThan(1e-11);
+	});
+
 	it.each<[string[], RegExp]>([
+		[['--threads', '3'], /^--threads: 3 \(expected 1 or 2\)\n$/],
+		[['--repeats', '0'], /^--repeats: 0 \(expected a whole number of 1 or more\)\n$/],
+		[['--matrix', 'A.mtx', '--rhs', 'b.mtx', '--edits'], /^--edits, --studies: need the plan/],
 		[['--case', 'odd'], /^--case: odd \(expected uniform, irregular, strong\)\n$/],
 		[['--nodes', '1'], /^--nodes: 1 \(expected a whole number of 2 or more\)\n$/],
 		[['--matrix', 'A.mtx'], /^arguments: --matrix and --rhs go together/],

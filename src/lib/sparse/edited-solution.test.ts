@@ -35,7 +35,7 @@ describe('an edited solution', () => {
 						place: [[port, 1]],
 						siemens: change[port]
 					}));
-					const answer = createEditableSolution(factor, ports, rows, b).edited(edits);
+					const answer = createEditableSolution(factor, ports, b).edited(edits);
 					if (answer === null) throw new Error('singular');
 					const x = answer.all();
 					const edited = withTies(new Map(rows.map((row, k) => [row, change[k]])));
@@ -52,7 +52,7 @@ describe('an edited solution', () => {
 	it('answers many cases at once as each alone', () => {
 		const rows = Array.from({ length: 21 }, (_, k) => 11 * k);
 		const ports = createPorts(factor, rows);
-		const editable = createEditableSolution(factor, ports, rows, b);
+		const editable = createEditableSolution(factor, ports, b);
 		const cases = rows.map((_, port): ConductanceEdit[] => [{ place: [[port, 1]], siemens: -2 }]);
 		const seen: number[] = [];
 		editable.eachEdited(cases, (index, x) => {
@@ -63,10 +63,45 @@ describe('an edited solution', () => {
 		expect(seen).toEqual(rows.map((_, k) => k));
 	});
 
+	it('adds currents at the ports', () => {
+		const rows = [3, 3, 250];
+		const editable = createEditableSolution(factor, createPorts(factor, rows), b);
+		editable.eachInjected(
+			11,
+			(index) => Float64Array.of(index, 2, -0.5 * index),
+			(index, x) => {
+				const injected = b.slice();
+				injected[3] += index + 2;
+				injected[250] -= 0.5 * index;
+				expect(backwardError(matrix, x, injected)).toBeLessThan(1e-14);
+			}
+		);
+	});
+
+	it('follows a port that moves', () => {
+		const ports = createPorts(factor, [40, 200, 200]);
+		ports.all();
+		for (const row of [7, graph.n - 1, 123]) {
+			ports.move(2, row);
+			const edits: ConductanceEdit[] = [
+				{ place: [[0, 1]], siemens: 1 },
+				{ place: [[2, 1]], siemens: 4 }
+			];
+			const x = createEditableSolution(factor, ports, b).edited(edits)?.all();
+			const edited = withTies(
+				new Map([
+					[40, 1],
+					[row, 4]
+				])
+			);
+			expect(backwardError(edited, x ?? b, b)).toBeLessThan(1e-13);
+		}
+	});
+
 	it('takes a place between two nodes by its weights', () => {
 		const rows = [40, 41];
 		const siemens = 3;
-		const answer = createEditableSolution(factor, createPorts(factor, rows), rows, b).edited([
+		const answer = createEditableSolution(factor, createPorts(factor, rows), b).edited([
 			{
 				place: [
 					[0, 0.25],
@@ -96,7 +131,7 @@ describe('an edited solution', () => {
 		const small = assemble(only);
 		const kept = factorOf(small, orderNestedDissection(small, only.x, only.y));
 		const right = new Float64Array(30).fill(1);
-		const editable = createEditableSolution(kept, createPorts(kept, [0]), [0], right);
+		const editable = createEditableSolution(kept, createPorts(kept, [0]), right);
 		expect(editable.edited([])?.all()).toEqual(editable.solution);
 		// The lattice is tied at its first node alone: without that tie it floats.
 		expect(editable.edited([{ place: [[0, 1]], siemens: -1 }])).toBeNull();

@@ -1,7 +1,7 @@
 import { LuDecomposition, Matrix } from 'ml-matrix';
 import type { CholeskyFactor } from './factorise.ts';
 import type { Ports } from './ports.ts';
-import { backwardBlockWith } from './solve-block.ts';
+import { solveRelated } from './solve-block.ts';
 import { backwardWith, forwardWith } from './solve.ts';
 
 /** A change of conductance from one place to the reference: adds siemens * e e^T to the matrix. */
@@ -40,6 +40,16 @@ export interface EditableSolution {
 		cases: readonly (readonly ConductanceEdit[])[],
 		answer: (index: number, x: Float64Array) => void
 	): void;
+	/**
+	 * The whole answers of the factored matrix with more currents at the ports, in the same way.
+	 *
+	 * @param currents of case `index`, one per port, A; may be one buffer for all
+	 */
+	eachInjected(
+		count: number,
+		currents: (index: number) => Float64Array,
+		answer: (index: number, x: Float64Array) => void
+	): void;
 }
 
 /**
@@ -49,12 +59,10 @@ export interface EditableSolution {
  * so that all of x' costs a backward substitution.
  *
  * @param ports of the factor; all places of edits are among them
- * @param rows of the matrix that the ports stand for, as given to `createPorts`
  */
 export function createEditableSolution(
 	factor: CholeskyFactor,
 	ports: Ports,
-	rows: ArrayLike<number>,
 	b: Float64Array
 ): EditableSolution {
 	const forward = forwardWith(factor, b);
@@ -64,18 +72,13 @@ export function createEditableSolution(
 	function sourcesOf(edits: readonly ConductanceEdit[]): readonly Source[] | null {
 		const active = edits.filter(({ siemens }) => siemens !== 0);
 		if (active.length === 0) return [];
-		const currents = editCurrents(active, ports, rows, solution);
+		const currents = editCurrents(active, ports, solution);
 		return (
 			currents &&
 			active.flatMap(({ place }, e) =>
 				place.map(([port, weight]) => ({ port, amps: -weight * currents[e] }))
 			)
 		);
-	}
-
-	function addSources(half: Float64Array, sources: readonly Source[]): void {
-		half.set(forward);
-		for (const { port, amps } of sources) ports.addTo(half, port, amps);
 	}
 
 	return {
@@ -87,11 +90,11 @@ export function createEditableSolution(
 				at: (port) =>
 					sources.reduce(
 						(sum, source) => sum + ports.at(port, source.port) * source.amps,
-						solution[rows[port]]
+						solution[ports.rows[port]]
 					),
 				all() {
-					const half = new Float64Array(forward.length);
-					addSources(half, sources);
+					const half = forward.slice();
+					for (const { port, amps } of sources) ports.addTo(half, port, amps);
 					return backwardWith(factor, half);
 				}
 			};
@@ -101,12 +104,32 @@ export function createEditableSolution(
 				const sources = sourcesOf(edits);
 				return sources === null ? [] : [{ index, sources }];
 			});
-			backwardBlockWith(
-				factor,
-				solvable.length,
-				(k, half) => addSources(half, solvable[k].sources),
-				(k, x) => answer(solvable[k].index, x)
-			);
+			solveRelated(factor, {
+				count: solvable.length,
+				common: forward,
+				isForwardDone: true,
+				change(k, y, lanes, lane) {
+					for (const { port, amps } of solvable[k].sources) {
+						ports.addTo(y, port, amps, lanes, lane);
+					}
+				},
+				answer: (k, x) => answer(solvable[k].index, x)
+			});
+		},
+		eachInjected(count, currents, answer) {
+			// Every port has a current: the ways of all of them are longer than the whole factor.
+			const { perm, iperm } = factor.symbolic;
+			solveRelated(factor, {
+				count,
+				common: Float64Array.from(perm, (row) => b[row]),
+				isForwardDone: false,
+				change(index, y, lanes, lane) {
+					currents(index).forEach(
+						(amps, port) => (y[iperm[ports.rows[port]] * lanes + lane] += amps)
+					);
+				},
+				answer
+			});
 		}
 	};
 }
@@ -120,7 +143,6 @@ interface Source {
 function editCurrents(
 	edits: readonly ConductanceEdit[],
 	ports: Ports,
-	rows: ArrayLike<number>,
 	solution: Float64Array
 ): number[] | null {
 	const between = (row: ConductanceEdit, column: ConductanceEdit) => {
@@ -144,7 +166,7 @@ function editCurrents(
 	);
 	const right = edits.map(
 		({ place }, e) =>
-			scale[e] * place.reduce((sum, [port, weight]) => sum + weight * solution[rows[port]], 0)
+			scale[e] * place.reduce((sum, [port, weight]) => sum + weight * solution[ports.rows[port]], 0)
 	);
 	const lu = new LuDecomposition(small);
 	const pivots = lu.upperTriangularMatrix.diagonal().map(Math.abs);

@@ -47,7 +47,7 @@ export interface FactoriseOptions {
 }
 
 /** Rows from which a second thread gains more than handing it work costs. */
-export const SECOND_THREAD_ROWS = 250_000;
+export const SECOND_THREAD_ROWS = 50_000;
 /**
  * Supernodes per kernel call: engines put a faster version of a kernel in place between calls, not
  * within one.

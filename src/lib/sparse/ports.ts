@@ -1,17 +1,25 @@
 import { extendMemory } from './factor-memory.ts';
 import type { CholeskyFactor } from './factorise.ts';
+import { unknownsView } from './substitute.ts';
 
 /**
  * A few rows of the matrix, the ports, with w = L^-1 e of each, which is nonzero only on the way from
  * its supernode to the root.
  */
 export interface Ports {
-	/** Entry of A^-1 between ports a and b, indices into the rows that were given. */
+	/** Row of the matrix that each port stands for. */
+	readonly rows: Int32Array;
+	/** Entry of A^-1 between ports a and b. */
 	at(a: number, b: number): number;
 	/** All entries by rows, symmetric. Length ports * ports. */
 	all(): Float64Array;
-	/** Adds `scale` times w of a port to y, n doubles in the new numbering. */
-	addTo(y: Float64Array, port: number, scale: number): void;
+	/** Makes a port stand for another row. */
+	move(port: number, row: number): void;
+	/**
+	 * Adds `scale` times w of a port to y, in the new numbering; with `lanes` of each unknown side by
+	 * side to one lane of them.
+	 */
+	addTo(y: Float64Array, port: number, scale: number, lanes?: number, lane?: number): void;
 }
 
 /**
@@ -23,55 +31,74 @@ export interface Ports {
  */
 export function createPorts(factor: CholeskyFactor, rows: ArrayLike<number>): Ports {
 	const { symbolic, space } = factor;
-	const { n, iperm, start, parent } = symbolic;
-	const { kernels, layout, memory } = space;
+	const { iperm, start, parent } = symbolic;
+	const { kernels, layout } = space;
 	const count = rows.length;
-	const supernode = Int32Array.from(rows, (row) => supernodeOf(start, iperm[row]));
 	const lengthOf = wayLengths(start, parent);
-	let values = 0;
-	const offset = Float64Array.from(supernode, (s) => {
-		const from = values;
-		values += lengthOf(s);
-		return from;
-	});
-	const vectorsAt = extendMemory(space, 8 * values);
-	const y = new Float64Array(memory.buffer, layout.ownY, n);
-	const vectors = new Float64Array(memory.buffer, vectorsAt, values);
-	y.fill(0);
-	for (let p = 0; p < count; p++) {
-		y[iperm[rows[p]]] = 1;
-		kernels.forwardPath(supernode[p], layout.ownY);
-		for (let s = supernode[p]; s !== -1; s = parent[s]) {
-			const own = y.subarray(start[s], start[s + 1]);
-			vectors.set(own, offset[p] + lengthOf(s) - own.length);
-			own.fill(0);
+	const portRows = Int32Array.from(rows);
+	const supernode = new Int32Array(count);
+	/** Where w of each port lies, bytes, and how many values fit there. */
+	const vectorAt = new Float64Array(count);
+	const capacity = new Int32Array(count);
+	const known = new Float64Array(count * count);
+
+	function move(port: number, row: number): void {
+		const s = supernodeOf(start, iperm[row]);
+		portRows[port] = row;
+		supernode[port] = s;
+		if (lengthOf(s) > capacity[port]) {
+			capacity[port] = lengthOf(s);
+			vectorAt[port] = extendMemory(space, 8 * capacity[port]);
+		}
+		// The factor's own unknowns, of which only those on the way are read or written.
+		const y = unknownsView(factor, layout.ownY, 1);
+		eachPiece(s, (first, end) => y.fill(0, first, end));
+		y[iperm[row]] = 1;
+		kernels.forwardPath(s, layout.ownY);
+		const vector = vectorOf(port);
+		eachPiece(s, (first, end, from) => {
+			vector.set(y.subarray(first, end), from);
+		});
+		for (let other = 0; other < count; other++) {
+			known[port * count + other] = NaN;
+			known[other * count + port] = NaN;
 		}
 	}
-	const known = new Float64Array(count * count).fill(NaN);
+
+	function vectorOf(port: number): Float64Array {
+		return new Float64Array(space.memory.buffer, vectorAt[port], lengthOf(supernode[port]));
+	}
+
+	/** Calls `take` with the columns of every supernode on the way, and their place in w. */
+	function eachPiece(s: number, take: (first: number, end: number, from: number) => void): void {
+		for (; s !== -1; s = parent[s]) take(start[s], start[s + 1], lengthOf(parent[s]));
+	}
 
 	function at(a: number, b: number): number {
 		const kept = known[a * count + b];
 		if (!Number.isNaN(kept)) return kept;
 		const common = lengthOf(meeting(parent, supernode[a], supernode[b]));
-		const value = kernels.dotProduct(vectorsAt + 8 * offset[a], vectorsAt + 8 * offset[b], common);
+		const value = kernels.dotProduct(vectorAt[a], vectorAt[b], common);
 		known[a * count + b] = value;
 		known[b * count + a] = value;
 		return value;
 	}
 
+	for (let port = 0; port < count; port++) move(port, rows[port]);
+
 	return {
+		rows: portRows,
 		at,
 		all() {
 			for (let a = 0; a < count; a++) for (let b = 0; b <= a; b++) at(a, b);
 			return known;
 		},
-		addTo(target, port, scale) {
-			const all = new Float64Array(memory.buffer, vectorsAt, values);
-			for (let s = supernode[port]; s !== -1; s = parent[s]) {
-				const first = start[s];
-				const from = offset[port] + lengthOf(s) - (start[s + 1] - first);
-				for (let j = first; j < start[s + 1]; j++) target[j] += scale * all[from + j - first];
-			}
+		move,
+		addTo(y, port, scale, lanes = 1, lane = 0) {
+			const vector = vectorOf(port);
+			eachPiece(supernode[port], (first, end, from) => {
+				for (let j = first; j < end; j++) y[j * lanes + lane] += scale * vector[from + j - first];
+			});
 		}
 	};
 }

@@ -33,53 +33,84 @@ export function solveBlockWith(
 	const y = unknownsView(factor, unknowns.at, lanes);
 	for (let first = 0; first < count; first += lanes) {
 		const used = Math.min(lanes, count - first);
+		const block = { from: first * n, used };
 		// Lanes without a right-hand side solve for zero.
 		if (used < lanes) y.fill(0);
-		for (let k = 0; k < n; k++) {
-			for (let c = 0, from = first * n + perm[k]; c < used; c++, from += n) {
-				y[k * lanes + c] = b[from];
-			}
-		}
+		interleave(b, y, perm, block);
 		substituteForward(factor, unknowns);
 		substituteBackward(factor, unknowns);
-		for (let k = 0; k < n; k++) {
-			for (let c = 0, to = first * n + perm[k]; c < used; c++, to += n) {
-				x[to] = y[k * lanes + c];
-			}
-		}
+		separate(y, x, perm, block);
 	}
 	return x;
 }
 
-/**
- * The backward half for several right-hand sides: calls `answer` with each one's solution, by rows
- * of the matrix, in a buffer that is used again for the next.
- *
- * @param fill writes the forward half of right-hand side `index` (L^-1 P b, new numbering) into y
- */
-export function backwardBlockWith(
-	factor: CholeskyFactor,
-	count: number,
-	fill: (index: number, y: Float64Array) => void,
-	answer: (index: number, x: Float64Array) => void
-): void {
+/** Many right-hand sides that have nearly everything in common. All vectors in the new numbering. */
+export interface RelatedSides {
+	readonly count: number;
+	/** P b, or where `isForwardDone` its forward half L^-1 P b. Length n. */
+	readonly common: Float64Array;
+	readonly isForwardDone: boolean;
+	/** Adds what right-hand side `index` has more to its lane: unknown k at y[k * lanes + lane]. */
+	change(index: number, y: Float64Array, lanes: number, lane: number): void;
+	/** Takes its solution, by rows of the matrix, in a buffer that is used again. */
+	answer(index: number, x: Float64Array): void;
+}
+
+/** Solves for right-hand sides that have nearly everything in common, some at a time. */
+export function solveRelated(factor: CholeskyFactor, sides: RelatedSides): void {
 	const { n, perm } = factor.symbolic;
 	const { lanes } = KERNEL_SIZES;
+	const { count, common } = sides;
 	const unknowns = laneUnknowns(factor);
 	const y = unknownsView(factor, unknowns.at, lanes);
-	const half = new Float64Array(n);
+	/** Solutions of the lanes one after another. */
+	const columns = new Float64Array(n * lanes);
 	for (let first = 0; first < count; first += lanes) {
 		const used = Math.min(lanes, count - first);
-		if (used < lanes) y.fill(0);
-		for (let c = 0; c < used; c++) {
-			fill(first + c, half);
-			for (let k = 0; k < n; k++) y[k * lanes + c] = half[k];
+		for (let k = 0, at = 0; k < n; k++) {
+			for (const end = at + lanes; at < end; at++) y[at] = common[k];
 		}
+		for (let c = 0; c < used; c++) sides.change(first + c, y, lanes, c);
+		if (!sides.isForwardDone) substituteForward(factor, unknowns);
 		substituteBackward(factor, unknowns);
-		for (let c = 0; c < used; c++) {
-			for (let k = 0; k < n; k++) half[perm[k]] = y[k * lanes + c];
-			answer(first + c, half);
-		}
+		separate(y, columns, perm, { from: 0, used });
+		for (let c = 0; c < used; c++) sides.answer(first + c, columns.subarray(c * n, (c + 1) * n));
+	}
+}
+
+/** Lanes in use, and where the first one's column begins. */
+interface LaneBlock {
+	readonly from: number;
+	readonly used: number;
+}
+
+/** Columns one after another -> lanes side by side; row k of y is row perm[k] of the columns. */
+function interleave(
+	columns: Float64Array,
+	y: Float64Array,
+	perm: Int32Array,
+	{ from, used }: LaneBlock
+): void {
+	const { lanes } = KERNEL_SIZES;
+	const n = y.length / lanes;
+	for (let k = 0; k < n; k++) {
+		let at = from + perm[k];
+		for (let c = 0; c < used; c++, at += n) y[k * lanes + c] = columns[at];
+	}
+}
+
+/** The way back. */
+function separate(
+	y: Float64Array,
+	columns: Float64Array,
+	perm: Int32Array,
+	{ from, used }: LaneBlock
+): void {
+	const { lanes } = KERNEL_SIZES;
+	const n = y.length / lanes;
+	for (let k = 0; k < n; k++) {
+		let at = from + perm[k];
+		for (let c = 0; c < used; c++, at += n) columns[at] = y[k * lanes + c];
 	}
 }
 
