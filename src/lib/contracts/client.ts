@@ -1,4 +1,3 @@
-import type { z } from 'zod';
 import { resultFileSchema, type ResultFile } from '#lib/results/index.ts';
 import { sessionSchema, type SessionAnswer } from './account.ts';
 import { jobSchema, type Job } from './jobs.ts';
@@ -11,7 +10,6 @@ import {
 	type FloorplanDetail,
 	type SubmitEdit
 } from './floorplans.ts';
-import { problemSchema, type ProblemDocument } from './problem.ts';
 import {
 	floorplanListSchema,
 	floorplanSummarySchema,
@@ -22,65 +20,18 @@ import {
 	type ProjectSummary
 } from './projects.ts';
 import type { ProjectRole } from './roles.ts';
+import { request, requestJson, type Fetch } from './request.ts';
+import { revisionOperations } from './revision-client.ts';
 import { solvesSchema, type Solves } from './solves.ts';
-
-/** The server answered with a problem. */
-export class ApiError extends Error {
-	override readonly name = 'ApiError';
-	readonly problem: ProblemDocument;
-
-	constructor(problem: ProblemDocument) {
-		super(problem.detail || problem.title);
-		this.problem = problem;
-	}
-}
-
-type Fetch = typeof fetch;
-
-async function request(
-	fetcher: Fetch,
-	method: string,
-	path: string,
-	body?: unknown
-): Promise<Response> {
-	const response = await fetcher(`/api/v1${path}`, {
-		method,
-		...(body === undefined
-			? {}
-			: { headers: { 'content-type': 'application/json' }, body: JSON.stringify(body) })
-	});
-	if (response.ok) return response;
-	const data: unknown = await response.json().catch(() => null);
-	const problem = problemSchema.safeParse(data);
-	throw new ApiError(
-		problem.success
-			? problem.data
-			: {
-					type: 'about:blank',
-					title: 'The server did not answer as expected',
-					status: response.status,
-					detail: `The server answered with status ${response.status}. Try again in a moment.`,
-					instance: ''
-				}
-	);
-}
-
-async function requestJson<T>(
-	fetcher: Fetch,
-	method: string,
-	path: string,
-	schema: z.ZodType<T>,
-	body?: unknown
-): Promise<T> {
-	const response = await request(fetcher, method, path, body);
-	return schema.parse(await response.json());
-}
+import { threadOperations } from './thread-client.ts';
 
 /** The product's own API, one function per operation. Each throws an ApiError with the problem. */
 export function createClient(fetcher: Fetch) {
 	const floorplan = (id: string) => `/floorplans/${encodeURIComponent(id)}`;
 	const project = (id: string) => `/projects/${encodeURIComponent(id)}`;
 	return {
+		...revisionOperations(fetcher),
+		...threadOperations(fetcher),
 		getSession: (): Promise<SessionAnswer> =>
 			requestJson(fetcher, 'GET', '/session', sessionSchema),
 		listProjects: async (): Promise<ProjectSummary[]> =>

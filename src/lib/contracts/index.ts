@@ -44,4 +44,42 @@ export {
 	signUpSchema
 } from './account.ts';
 export type { ApiClient } from './client.ts';
-export { ApiError, createClient } from './client.ts';
+export type { ThreadScope } from './thread-client.ts';
+export { createClient } from './client.ts';
+export { ApiError } from './request.ts';
+export type {
+	AskReview,
+	Blocker,
+	Decide,
+	FindingStatus,
+	Freeze,
+	PersonName,
+	PlanState,
+	Restore,
+	RevisionDetail,
+	RevisionFinding,
+	RevisionFindings,
+	RevisionMove,
+	RevisionMoveRecord,
+	RevisionResult,
+	RevisionState,
+	RevisionSummary
+} from './revisions.ts';
+export {
+	askReviewSchema,
+	canMove,
+	decideSchema,
+	FINDING_STATUSES,
+	freezeSchema,
+	moveBetween,
+	PLAN_STATES,
+	REVISION_MOVES,
+	REVISION_STATES,
+	restoreSchema,
+	revisionDetailSchema,
+	revisionFindingsSchema,
+	revisionListSchema,
+	revisionSummarySchema
+} from './revisions.ts';
+export type { AnchorInput, OpenThread, Thread, ThreadAnchor, ThreadComment } from './threads.ts';
+export { addCommentSchema, openThreadSchema, threadListSchema, threadSchema } from './threads.ts';

@@ -14,6 +14,7 @@ const TABLE: Readonly<Record<Action, string>> = {
 	'solve.run': 'yyynnn',
 	'revision.freeze': 'ynynnn',
 	'revision.decide': 'nnynnn',
+	'thread.resolve': 'yyynnn',
 	'finding.waive': 'nnynnn',
 	'project.members': 'nnynyn',
 	'project.archive': 'nnynyn',

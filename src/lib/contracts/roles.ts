@@ -27,8 +27,12 @@ export const PERMISSIONS = {
 	/** Blocks, modes, corners and limits. */
 	'floorplan.loads': ['placer', 'analyst', 'lead'],
 	'solve.run': ['placer', 'analyst', 'lead'],
+	/** Also asks for its review. */
 	'revision.freeze': ['placer', 'lead'],
+	/** Never one's own work, whatever the role: the service asks that besides. */
 	'revision.decide': ['lead'],
+	/** Threads of others; whoever opened one may always resolve or reopen it. */
+	'thread.resolve': ['placer', 'analyst', 'lead'],
 	'finding.waive': ['lead'],
 	'team.view': ['member'],
 	'team.members': ['admin'],
