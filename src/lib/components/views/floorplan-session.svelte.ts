@@ -93,6 +93,12 @@ export class FloorplanSession {
 		return events;
 	}
 
+	/** The server's version that is on the screen; what has not been sent comes on top of it. */
+	get version(): number {
+		void this.syncState;
+		return this.#sync.version;
+	}
+
 	retry(): void {
 		this.#sync.retryNow();
 	}

@@ -1,5 +1,5 @@
 import { createQuery, useQueryClient } from '@tanstack/svelte-query';
-import { isFinished, type ApiClient, type Job } from '#lib/contracts/index.ts';
+import { isFinished, type ApiClient, type Job, type Solves } from '#lib/contracts/index.ts';
 import { hashFloorplan } from '#lib/floorplan/index.ts';
 import type { EditorState } from '#lib/editor/editor-state.svelte.ts';
 import { decodeDropMap, type ResultFile } from '#lib/results/index.ts';
@@ -16,6 +16,13 @@ export interface ReadingChoice {
 	readonly net: string | null;
 }
 
+/** Where results come from: the draft of a floorplan as it stands, or one of its revisions. */
+export interface SolvesSource {
+	/** Identity for the query cache. */
+	readonly key: readonly string[];
+	readonly read: () => Promise<Solves>;
+}
+
 /** The maps of one result, and which choice they were fetched for. */
 interface FetchedMaps {
 	readonly view: string;
@@ -28,14 +35,14 @@ function known(list: readonly { readonly id: string }[], id: string | null): str
 }
 
 /**
- * Follows which mode, corner and net of a floorplan is read, and what the server has for it; called
+ * Follows which mode, corner and net of a plan is read, and what the server has for it; called
  * while a component is set up. Results and maps never change once kept, so they are fetched once;
  * those of the neighbouring modes and corners are fetched ahead, so that switching shows them at
  * once.
  */
 export function followReading(
 	client: ApiClient,
-	floorplanId: string,
+	source: SolvesSource,
 	face: EditorState,
 	first: ReadingChoice
 ) {
@@ -50,11 +57,8 @@ export function followReading(
 	const net = $derived(floorplan.nets.find(({ id }) => id === choice.net)?.id ?? ALL_RAILS);
 	const nets = $derived(netsOf(floorplan, net));
 
-	const solvesKey = ['solves', floorplanId];
-	const solves = createQuery(() => ({
-		queryKey: solvesKey,
-		queryFn: () => client.getSolves(floorplanId)
-	}));
+	const solvesKey = ['solves', ...source.key];
+	const solves = createQuery(() => ({ queryKey: solvesKey, queryFn: source.read }));
 	const summary = $derived(
 		solves.data?.results.find((one) => one.mode === mode && one.corner === corner)
 	);
