@@ -183,6 +183,8 @@ export const findingSchema = z.object({
 	/** List of the floorplan in which `subject` is an id. */
 	list: z.enum(FINDING_LISTS),
 	subject: z.string(),
+	/** What else it is about where the subject alone does not tell: net of a via, other strap of a short. */
+	partner: z.string().optional(),
 	value: z.number(),
 	limit: z.number(),
 	/** Unit of value and limit; empty for a plain ratio or count. */

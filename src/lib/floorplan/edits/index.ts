@@ -17,6 +17,7 @@ export {
 	removeItems,
 	setProperty
 } from './actions.ts';
+export { operationsBetween } from './difference.ts';
 export type { Referrer } from './references.ts';
 export { referrersOf } from './references.ts';
 export type { OutlineFrame } from './outline-frame.ts';
