@@ -8,7 +8,6 @@ import {
 	type KernelCall,
 	type Kernels
 } from './kernels.ts';
-import type { Unknowns } from './substitute.ts';
 import type { Ranges, WorkSplit } from './work-split.ts';
 
 /** Stacks of update matrices of one thread, values. */
@@ -64,6 +63,15 @@ export interface FactorLayout {
 	readonly ownY: number;
 	/** What only two threads need; then `own` is the space of the calling one. */
 	readonly shared: SharedSpace | null;
+}
+
+/** Unknowns of one or several right-hand sides in a factor's memory, in the new numbering. */
+export interface Unknowns {
+	/** Where they lie, bytes: `lanes` doubles of each of n unknowns. */
+	readonly at: number;
+	/** The second thread's copy, where there is one. */
+	readonly otherAt: number;
+	readonly lanes: number;
 }
 
 /** A factor's memory with the kernels bound to it. */

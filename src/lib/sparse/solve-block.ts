@@ -1,13 +1,8 @@
-import { extendMemory } from './factor-memory.ts';
+import { extendMemory, type Unknowns } from './factor-memory.ts';
 import type { CholeskyFactor } from './factorise.ts';
 import { KERNEL_SIZES } from './kernels.ts';
 import { solveWith } from './solve.ts';
-import {
-	substituteBackward,
-	substituteForward,
-	unknownsView,
-	type Unknowns
-} from './substitute.ts';
+import { substituteBackward, substituteForward, unknownsView } from './substitute.ts';
 
 /**
  * Solves A X = B for several right-hand sides. As many as the kernels have lanes pass through the

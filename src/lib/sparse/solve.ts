@@ -1,10 +1,6 @@
+import type { Unknowns } from './factor-memory.ts';
 import type { CholeskyFactor } from './factorise.ts';
-import {
-	substituteBackward,
-	substituteForward,
-	unknownsView,
-	type Unknowns
-} from './substitute.ts';
+import { substituteBackward, substituteForward, unknownsView } from './substitute.ts';
 
 /**
  * Solves A x = b with a kept factor: forward and backward substitution over the panels.

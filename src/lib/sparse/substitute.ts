@@ -1,17 +1,8 @@
 import type { SymbolicFactor } from './analyse.ts';
-import { bindCalls } from './factor-memory.ts';
+import { bindCalls, type Unknowns } from './factor-memory.ts';
 import { runTogether, type CholeskyFactor, type Team } from './factorise.ts';
 import { makeCalls, type KernelCall } from './kernels.ts';
 import type { Ranges } from './work-split.ts';
-
-/** Unknowns of one or several right-hand sides in a factor's memory, in the new numbering. */
-export interface Unknowns {
-	/** Where they lie, bytes: `lanes` doubles of each of n unknowns. */
-	readonly at: number;
-	/** The second thread's copy, where there is one. */
-	readonly otherAt: number;
-	readonly lanes: number;
-}
 
 /** A view of unknowns; to be made anew after the memory has grown. Length n * lanes. */
 export function unknownsView(
