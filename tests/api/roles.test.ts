@@ -6,7 +6,11 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { connect, type Connection } from '#lib/server/db/client.ts';
 import { resultMaps, results } from '#lib/server/db/schema/index.ts';
 import { figuresOf } from '#lib/server/jobs/solve-kind.ts';
+import { insertFloorplan } from '#lib/server/services/floorplans.ts';
+import { askReview } from '#lib/server/services/review.ts';
+import { freeze } from '#lib/server/services/revisions.ts';
 import { requestSolves } from '#lib/server/services/solves.ts';
+import { openThread } from '#lib/server/services/threads.ts';
 import { SOLVER_VERSION } from '#lib/solver/index.ts';
 import { routes, startApiServer, type ApiServer } from '../support/api-server.ts';
 import { createTestDatabase, type TestDatabase } from '../support/database.ts';
@@ -119,6 +123,25 @@ async function waitingJob(): Promise<string> {
 	);
 	const waiting = jobs.find(({ state }) => state === 'queued');
 	return waiting?.id ?? '';
+}
+
+/** A revision of a floorplan of its own, frozen by the placer. */
+async function frozen(isInReview = false): Promise<{ id: string; hash: string }> {
+	const { actor } = world.members.placer;
+	const floorplanId = await insertFloorplan(connection.db, actor, world.projectId, plan);
+	const wanted = { baseVersion: 1, title: '', note: '' };
+	const { id, hash } = await freeze(connection.db, actor, floorplanId, wanted);
+	if (isInReview) await askReview(connection.db, actor, id, { note: '' });
+	return { id, hash };
+}
+
+/** A thread that the placer opened. */
+async function opened(): Promise<{ id: string; comment: string }> {
+	const subject = { kind: 'floorplan', id: world.floorplanId } as const;
+	const opening = { anchor: { kind: 'plan' }, text: 'Is this so?' } as const;
+	const { actor } = world.members.placer;
+	const { id, comments } = await openThread(connection.db, actor, subject, opening);
+	return { id, comment: comments[0].id };
 }
 
 function edit(operations: readonly unknown[]): Call {
@@ -308,6 +331,165 @@ const OPERATIONS: readonly Operation[] = [
 	},
 	{
 		method: 'GET',
+		route: '/api/v1/floorplans/[floorplanId]/revisions',
+		what: 'lists revisions',
+		allowed: SEE,
+		call: () => ({ path: `/api/v1/floorplans/${world.floorplanId}/revisions` })
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/floorplans/[floorplanId]/revisions',
+		what: 'freezes a revision',
+		allowed: DRAW,
+		call: async () => {
+			const { actor } = world.members.placer;
+			const id = await insertFloorplan(connection.db, actor, world.projectId, plan);
+			return { path: `/api/v1/floorplans/${id}/revisions`, body: { baseVersion: 1 } };
+		}
+	},
+	{
+		method: 'GET',
+		route: '/api/v1/revisions/[revisionId]',
+		what: 'reads a revision',
+		allowed: SEE,
+		call: async () => {
+			const { id } = await frozen();
+			return { path: `/api/v1/revisions/${id}` };
+		}
+	},
+	{
+		method: 'GET',
+		route: '/api/v1/revisions/[revisionId]/findings',
+		what: 'reads findings',
+		allowed: SEE,
+		call: async () => {
+			const { id } = await frozen();
+			return { path: `/api/v1/revisions/${id}/findings` };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/revisions/[revisionId]/solves',
+		what: 'solves a revision',
+		allowed: SOLVE,
+		call: async () => {
+			const { id } = await frozen();
+			return { path: `/api/v1/revisions/${id}/solves`, body: {} };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/revisions/[revisionId]/review',
+		what: 'asks for review',
+		allowed: DRAW,
+		call: async () => {
+			const { id } = await frozen();
+			return { path: `/api/v1/revisions/${id}/review`, body: {} };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/revisions/[revisionId]/decision',
+		what: 'returns a revision',
+		allowed: ['lead'],
+		call: async () => {
+			const { id, hash } = await frozen(true);
+			const body = { decision: 'return', hash, note: 'Not yet.' };
+			return { path: `/api/v1/revisions/${id}/decision`, body };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/revisions/[revisionId]/draft',
+		what: 'starts the draft anew',
+		allowed: DRAW,
+		call: async () => {
+			const { id } = await frozen();
+			return { path: `/api/v1/revisions/${id}/draft`, body: { baseVersion: 1 } };
+		}
+	},
+	{
+		method: 'GET',
+		route: '/api/v1/floorplans/[floorplanId]/threads',
+		what: 'reads threads of a draft',
+		allowed: SEE,
+		call: () => ({ path: `/api/v1/floorplans/${world.floorplanId}/threads` })
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/floorplans/[floorplanId]/threads',
+		what: 'opens a thread on a draft',
+		allowed: SEE,
+		call: () => ({
+			path: `/api/v1/floorplans/${world.floorplanId}/threads`,
+			body: { anchor: { kind: 'place', xUm: 1, yUm: 2 }, text: 'Why here?' }
+		})
+	},
+	{
+		method: 'GET',
+		route: '/api/v1/revisions/[revisionId]/threads',
+		what: 'reads threads of a revision',
+		allowed: SEE,
+		call: async () => {
+			const { id } = await frozen();
+			return { path: `/api/v1/revisions/${id}/threads` };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/revisions/[revisionId]/threads',
+		what: 'opens a thread on a revision',
+		allowed: SEE,
+		call: async () => {
+			const { id } = await frozen();
+			return {
+				path: `/api/v1/revisions/${id}/threads`,
+				body: { anchor: { kind: 'place', xUm: 1, yUm: 2 }, text: 'Why here?' }
+			};
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/threads/[threadId]/comments',
+		what: 'comments',
+		allowed: SEE,
+		call: async () => {
+			const { id } = await opened();
+			return { path: `/api/v1/threads/${id}/comments`, body: { text: 'Because.' } };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/threads/[threadId]/resolve',
+		what: 'resolves a thread of somebody else or their own',
+		allowed: ['placer', 'analyst', 'lead'],
+		call: async () => {
+			const { id } = await opened();
+			return { path: `/api/v1/threads/${id}/resolve`, body: {} };
+		}
+	},
+	{
+		method: 'POST',
+		route: '/api/v1/threads/[threadId]/reopen',
+		what: 'reopens a thread of somebody else or their own',
+		allowed: ['placer', 'analyst', 'lead'],
+		call: async () => {
+			const { id } = await opened();
+			return { path: `/api/v1/threads/${id}/reopen`, body: {} };
+		}
+	},
+	{
+		method: 'DELETE',
+		route: '/api/v1/threads/[threadId]/comments/[commentId]',
+		what: 'deletes a comment of the placer',
+		allowed: ['placer'],
+		call: async () => {
+			const { id, comment } = await opened();
+			return { path: `/api/v1/threads/${id}/comments/${comment}` };
+		}
+	},
+	{
+		method: 'GET',
 		route: '/api/v1/jobs/[jobId]',
 		what: 'reads a job',
 		allowed: SEE,
@@ -440,7 +622,7 @@ describe('nested ids of another team', () => {
 	it.each(['not-an-id', '00000000-0000-4000-8000-000000000000'])(
 		'answers for %s as for a foreign one',
 		async (id) => {
-			for (const path of ['projects', 'floorplans', 'jobs', 'results']) {
+			for (const path of ['projects', 'floorplans', 'jobs', 'results', 'revisions']) {
 				const response = await server.as(world.admin.token)(`/api/v1/${path}/${id}`);
 				expect(response.status, path).toBe(404);
 			}

@@ -16,7 +16,8 @@ export interface AuditEntry {
 	readonly requestId: string;
 	/** What was done, as `object.verb`. */
 	readonly action: string;
-	readonly objectKind: 'user' | 'team' | 'project' | 'floorplan' | 'job' | 'result';
+	readonly objectKind:
+		'user' | 'team' | 'project' | 'floorplan' | 'job' | 'result' | 'revision' | 'thread';
 	readonly objectId: string;
 	readonly outcome?: 'done' | 'refused';
 	readonly detail?: Record<string, unknown>;

@@ -6,6 +6,7 @@ const KINDS = {
 	forbidden: { status: 403, title: 'Your role does not allow this' },
 	'not-found': { status: 404, title: 'There is no such thing here' },
 	conflict: { status: 409, title: 'Somebody else was faster' },
+	blocked: { status: 409, title: 'Something stands against it' },
 	'too-large': { status: 413, title: 'Too large' },
 	invalid: { status: 422, title: 'Something in the request is not right' },
 	'too-many': { status: 429, title: 'Too many at once' },

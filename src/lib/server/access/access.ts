@@ -2,13 +2,24 @@ import { and, eq } from 'drizzle-orm';
 import { may, type Action, type Standing } from '#lib/contracts/index.ts';
 import { audit, type Actor } from '../audit.ts';
 import type { Handle } from '../db/client.ts';
-import { floorplans, jobs, projectMembers, projects, results } from '../db/schema/index.ts';
+import {
+	floorplans,
+	jobs,
+	projectMembers,
+	projects,
+	results,
+	revisions,
+	threads
+} from '../db/schema/index.ts';
 import { Problem } from '../problem.ts';
 
 /** Objects that permissions are asked about. All but the team itself belong to a project. */
 export type Subject =
 	| { readonly kind: 'team' }
-	| { readonly kind: 'project' | 'floorplan' | 'job' | 'result'; readonly id: string };
+	| {
+			readonly kind: 'project' | 'floorplan' | 'job' | 'result' | 'revision' | 'thread';
+			readonly id: string;
+	  };
 
 /** The project that an object belongs to and how the actor stands towards it. */
 export interface Access extends Standing {
@@ -40,6 +51,18 @@ function projectOf(db: Handle, subject: Exclude<Subject, { kind: 'team' }>) {
 				.select({ projectId: results.projectId })
 				.from(results)
 				.where(eq(results.id, subject.id));
+		case 'revision':
+			return db
+				.select({ projectId: floorplans.projectId })
+				.from(revisions)
+				.innerJoin(floorplans, eq(floorplans.id, revisions.floorplanId))
+				.where(eq(revisions.id, subject.id));
+		case 'thread':
+			return db
+				.select({ projectId: floorplans.projectId })
+				.from(threads)
+				.innerJoin(floorplans, eq(floorplans.id, threads.floorplanId))
+				.where(eq(threads.id, subject.id));
 	}
 }
 

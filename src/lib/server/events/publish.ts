@@ -1,5 +1,6 @@
 import { sql } from 'drizzle-orm';
 import { z } from 'zod';
+import { REVISION_STATES } from '#lib/contracts/index.ts';
 import type { Handle } from '../db/client.ts';
 
 /** Channel on which every process hears what changed. */
@@ -24,6 +25,19 @@ export const noticeSchema = z.discriminatedUnion('type', [
 		mode: z.string(),
 		corner: z.string(),
 		documentHash: z.string()
+	}),
+	z.object({
+		type: z.literal('revision'),
+		floorplanId: z.string(),
+		id: z.string(),
+		number: z.int(),
+		state: z.enum(REVISION_STATES)
+	}),
+	z.object({
+		type: z.literal('thread'),
+		floorplanId: z.string(),
+		id: z.string(),
+		revisionId: z.string().nullable()
 	})
 ]);
 export type Notice = z.infer<typeof noticeSchema>;

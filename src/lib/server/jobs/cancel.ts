@@ -1,6 +1,6 @@
-import { and, eq, inArray, ne, sql } from 'drizzle-orm';
+import { and, eq, inArray, ne, notExists, sql } from 'drizzle-orm';
 import type { Handle } from '../db/client.ts';
-import { jobs } from '../db/schema/index.ts';
+import { jobs, revisions } from '../db/schema/index.ts';
 import { publish, publishCancel } from '../events/publish.ts';
 import { UNFINISHED } from './job-rows.ts';
 import { SOLVE_KIND } from './solve-kind.ts';
@@ -25,7 +25,7 @@ export async function cancelJob(db: Handle, jobId: string): Promise<void> {
 
 /**
  * Cancels solves of older documents of a floorplan that still wait: a newer one of the same mode and
- * corner takes their place.
+ * corner takes their place. Those of a revision stay: it is never complete without them.
  */
 export async function cancelSuperseded(
 	db: Handle,
@@ -41,7 +41,18 @@ export async function cancelSuperseded(
 				eq(jobs.state, 'queued'),
 				eq(sql`${jobs.input} ->> 'mode'`, wanted.mode),
 				eq(sql`${jobs.input} ->> 'corner'`, wanted.corner),
-				ne(sql`${jobs.input} ->> 'documentHash'`, wanted.documentHash)
+				ne(sql`${jobs.input} ->> 'documentHash'`, wanted.documentHash),
+				notExists(
+					db
+						.select({ id: revisions.id })
+						.from(revisions)
+						.where(
+							and(
+								eq(revisions.floorplanId, wanted.floorplanId),
+								eq(revisions.hash, sql`${jobs.input} ->> 'documentHash'`)
+							)
+						)
+				)
 			)
 		);
 	for (const { id } of waiting) await cancelJob(db, id);

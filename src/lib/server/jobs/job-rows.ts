@@ -1,4 +1,4 @@
-import { desc, eq, sql } from 'drizzle-orm';
+import { and, desc, eq, sql } from 'drizzle-orm';
 import { z } from 'zod';
 import type { Job } from '#lib/contracts/index.ts';
 import type { Handle } from '../db/client.ts';
@@ -62,6 +62,27 @@ export async function listJobs(db: Handle, floorplanId: string): Promise<Job[]> 
 		.selectDistinctOn(alike, { job: jobs, ahead })
 		.from(jobs)
 		.where(eq(jobs.floorplanId, floorplanId))
+		.orderBy(...alike, desc(jobs.createdAt));
+	return rows.map(toJob);
+}
+
+/** The newest job of each mode and corner that solves a document of a floorplan. */
+export async function listSolves(
+	db: Handle,
+	floorplanId: string,
+	documentHash: string
+): Promise<Job[]> {
+	const alike = [sql`"jobs"."input" ->> 'mode'`, sql`"jobs"."input" ->> 'corner'`];
+	const rows = await db
+		.selectDistinctOn(alike, { job: jobs, ahead })
+		.from(jobs)
+		.where(
+			and(
+				eq(jobs.floorplanId, floorplanId),
+				eq(jobs.kind, 'solve'),
+				eq(sql`${jobs.input} ->> 'documentHash'`, documentHash)
+			)
+		)
 		.orderBy(...alike, desc(jobs.createdAt));
 	return rows.map(toJob);
 }

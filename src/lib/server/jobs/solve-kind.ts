@@ -5,6 +5,7 @@ import type { ResultFile } from '#lib/results/index.ts';
 import type { Handle } from '../db/client.ts';
 import { documents, resultMaps, results, type ResultFigures } from '../db/schema/index.ts';
 import { publish } from '../events/publish.ts';
+import { bindResults } from './bind-results.ts';
 import { JobRefused, type JobKind } from './job-kind.ts';
 import type { SolveAnswer } from './solve-messages.ts';
 import type { SolveRunner } from './solve-runner.ts';
@@ -87,6 +88,7 @@ async function storeResult(
 			.insert(resultMaps)
 			.values(maps.map(({ net, gzip }) => ({ resultId: created.id, net, gzip })));
 	}
+	await bindResults(db, projectId, documentHash);
 	// Kept already by another floorplan of the same content: the numbers are the same.
 	const id = created?.id ?? (await findResult(db, input))?.id;
 	if (id) await publish(db, { type: 'result', floorplanId, id, mode, corner, documentHash });

@@ -9,6 +9,7 @@ import type { Floorplan } from '#lib/floorplan/index.ts';
 import { meshFloorplan, type ModelProblem, type Network } from '#lib/mesh/index.ts';
 import { buildDropMap, buildResult, encodeDropMap } from '#lib/results/index.ts';
 import { createGridCache, solveOperatingPoint, type GridCache } from '#lib/solver/index.ts';
+import { threadFor, type WorkerThread } from '#lib/threads/index.ts';
 import type { SolveReply, SolveRequest } from './solve-messages.ts';
 
 /** Part of the whole that is done when a phase begins. */
@@ -30,6 +31,9 @@ interface MeshedPlan {
 
 /** The plan of the last solve: its other modes and corners usually follow. */
 let meshed: MeshedPlan | undefined;
+
+/** Started with the first plan that gains from it, and kept. */
+let secondThread: WorkerThread | null = null;
 
 function seconds(): number {
 	return performance.now() / 1000;
@@ -69,10 +73,11 @@ function mesh(floorplan: Floorplan, documentHash: string): MeshedPlan | null {
 		return null;
 	}
 	const { network } = result;
+	secondThread ??= threadFor(Math.max(...network.nets.map(({ nodeCount }) => nodeCount)));
 	meshed = {
 		documentHash,
 		network,
-		cache: createGridCache(network),
+		cache: createGridCache(network, secondThread),
 		meshSeconds: seconds() - begin
 	};
 	return meshed;

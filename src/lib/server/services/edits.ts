@@ -9,10 +9,11 @@ import {
 } from '#lib/floorplan/edits/index.ts';
 import { requireAccess } from '../access/access.ts';
 import type { Actor } from '../audit.ts';
-import type { Database, Handle } from '../db/client.ts';
+import type { Handle } from '../db/client.ts';
 import { floorplanEdits, floorplans, users } from '../db/schema/index.ts';
 import { publish } from '../events/publish.ts';
 import { Problem } from '../problem.ts';
+import { keepPlaces } from './threads.ts';
 
 /** Edits that one page of the history holds. */
 const PAGE_SIZE = 200;
@@ -41,12 +42,15 @@ async function requireEdit(
  * Applies an edit to the document as it stands now. Takes effect exactly once: an edit that was
  * accepted before answers as it did then. Edits of different things merge; where somebody else has
  * changed the same thing since, the answer is a conflict with both values, and nothing is changed.
+ *
+ * @param at when it happened
  */
 export async function submitEdit(
-	db: Database,
+	db: Handle,
 	actor: Actor,
 	id: string,
-	edit: SubmitEdit
+	edit: SubmitEdit,
+	at = new Date()
 ): Promise<EditAccepted> {
 	await requireEdit(db, actor, id, edit.operations);
 	return db.transaction(async (tx) => {
@@ -91,7 +95,7 @@ export async function submitEdit(
 				document: result.floorplan,
 				name: result.floorplan.name ?? 'Untitled',
 				updatedBy: actor.userId,
-				updatedAt: new Date()
+				updatedAt: at
 			})
 			.where(eq(floorplans.id, id));
 		await tx.insert(floorplanEdits).values({
@@ -102,8 +106,10 @@ export async function submitEdit(
 			baseVersion: edit.baseVersion,
 			toVersion: version,
 			toHash: hash,
-			userId: actor.userId
+			userId: actor.userId,
+			at
 		});
+		await keepPlaces(tx, id, row.document, edit.operations);
 		await publish(tx, { type: 'edit', floorplanId: id, version, by: actor.name, editId: edit.id });
 		return { version, hash };
 	});

@@ -1,6 +1,7 @@
 import { and, count, eq, inArray, sql } from 'drizzle-orm';
 import type { z } from 'zod';
 import type { Job, requestSolvesSchema, Solves } from '#lib/contracts/index.ts';
+import type { Floorplan } from '#lib/floorplan/index.ts';
 import type { ResultFile } from '#lib/results/index.ts';
 import { SOLVER_VERSION } from '#lib/solver/index.ts';
 import { requireAccess } from '../access/access.ts';
@@ -80,47 +81,63 @@ export async function requestSolves(
 				`${combinations.length} modes and corners at once (at most ${MAX_COMBINATIONS}). Ask for one mode or corner.`
 			);
 		}
-		const kept = await tx
-			.select({ mode: results.mode, corner: results.corner })
-			.from(results)
-			.where(
-				and(
-					eq(results.projectId, projectId),
-					eq(results.documentHash, hash),
-					eq(results.solverVersion, SOLVER_VERSION),
-					inArray(results.mode, modes)
-				)
-			);
-		const missing = combinations.filter(
-			({ mode, corner }) => !kept.some((one) => one.mode === mode && one.corner === corner)
-		);
-		if (missing.length > 0) {
-			await requireRoom(tx, actor.teamId, missing.length);
-			await tx.insert(documents).values({ projectId, hash, document }).onConflictDoNothing();
-		}
-		for (const { mode, corner } of missing) {
-			const input = { projectId, floorplanId: id, documentHash: hash, mode, corner };
-			await cancelSuperseded(tx, input);
-			const job = await enqueue(tx, {
-				kind: SOLVE_KIND,
-				input,
-				dedupeKey: solveDedupeKey(input),
-				teamId: actor.teamId,
-				floorplanId: id,
-				requestedBy: actor.userId
-			});
-			await audit(tx, {
-				teamId: actor.teamId,
-				userId: actor.userId,
-				requestId: actor.requestId,
-				action: 'solve.request',
-				objectKind: 'job',
-				objectId: job.id,
-				detail: { floorplanId: id, mode, corner }
-			});
-		}
+		await enqueueMissing(tx, actor, { projectId, floorplanId: id, hash, document }, combinations);
 	});
 	return getSolves(db, actor, id);
+}
+
+export interface SolvedDocument {
+	readonly projectId: string;
+	readonly floorplanId: string;
+	readonly hash: string;
+	readonly document: Floorplan;
+}
+
+/** Enqueues the solves of a document that are not kept yet, within the caller's transaction. */
+export async function enqueueMissing(
+	tx: Handle,
+	actor: Actor,
+	{ projectId, floorplanId, hash, document }: SolvedDocument,
+	combinations: readonly { readonly mode: string; readonly corner: string }[]
+): Promise<void> {
+	const kept = await tx
+		.select({ mode: results.mode, corner: results.corner })
+		.from(results)
+		.where(
+			and(
+				eq(results.projectId, projectId),
+				eq(results.documentHash, hash),
+				eq(results.solverVersion, SOLVER_VERSION)
+			)
+		);
+	const missing = combinations.filter(
+		({ mode, corner }) => !kept.some((one) => one.mode === mode && one.corner === corner)
+	);
+	if (missing.length > 0) {
+		await requireRoom(tx, actor.teamId, missing.length);
+		await tx.insert(documents).values({ projectId, hash, document }).onConflictDoNothing();
+	}
+	for (const { mode, corner } of missing) {
+		const input = { projectId, floorplanId, documentHash: hash, mode, corner };
+		await cancelSuperseded(tx, input);
+		const job = await enqueue(tx, {
+			kind: SOLVE_KIND,
+			input,
+			dedupeKey: solveDedupeKey(input),
+			teamId: actor.teamId,
+			floorplanId,
+			requestedBy: actor.userId
+		});
+		await audit(tx, {
+			teamId: actor.teamId,
+			userId: actor.userId,
+			requestId: actor.requestId,
+			action: 'solve.request',
+			objectKind: 'job',
+			objectId: job.id,
+			detail: { floorplanId, mode, corner }
+		});
+	}
 }
 
 /** Refuses more work of a team than can be looked through. */
