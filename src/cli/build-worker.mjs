@@ -1,5 +1,5 @@
 /**
- * Bundles the worker, its solve thread and the service commands for Node. The framework's build
+ * Bundles the worker, its solve threads and the service commands for Node. The framework's build
  * makes the web server only, and empties build/ first: this runs after it.
  */
 import { build } from 'esbuild';
@@ -16,7 +16,8 @@ export async function buildWorker(outdir = WORKER_FOLDER) {
 			'src/cli/worker.ts',
 			'src/cli/migrate.ts',
 			'src/cli/load-demo.ts',
-			'src/lib/server/jobs/solve-thread.ts'
+			'src/lib/server/jobs/solve-thread.ts',
+			'src/lib/threads/second-thread.js'
 		],
 		entryNames: '[name]',
 		outdir,

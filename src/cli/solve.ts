@@ -5,7 +5,8 @@ import { parseArgs } from 'node:util';
 import { hashFloorplan } from '#lib/floorplan/index.ts';
 import { meshFloorplan } from '#lib/mesh/index.ts';
 import { buildResult, nodesCsv } from '#lib/results/index.ts';
-import { solveOperatingPoint } from '#lib/solver/index.ts';
+import { createGridCache, solveOperatingPoint } from '#lib/solver/index.ts';
+import { threadFor } from '#lib/threads/index.ts';
 import {
 	EXIT_LIMIT_BROKEN,
 	EXIT_SOLVED,
@@ -75,11 +76,14 @@ async function solve(): Promise<number> {
 	if (meshed.status === 'refused') return failWith(problemLines(meshed.problems));
 	const meshSeconds = seconds() - begin;
 	const { network } = meshed;
+	const thread = threadFor(Math.max(...network.nets.map(({ nodeCount }) => nodeCount)));
 	const outcome = solveOperatingPoint(floorplan, network, {
 		mode: conditions.mode.id,
 		corner: conditions.corner.id,
+		cache: createGridCache(network, thread),
 		now: seconds
 	});
+	await thread?.stop();
 	if (outcome.status === 'stopped') throw new Error('the solve stopped without being asked to');
 	if (outcome.status !== 'solved') return failWith(problemLines(outcome.problems));
 

@@ -1,5 +1,6 @@
 import type { Corner, Floorplan, Mode } from '#lib/floorplan/index.ts';
 import { senseProbes, type Network } from '#lib/mesh/index.ts';
+import { gather } from './gather.ts';
 
 /** The regulators that are enabled, in flat arrays; `unit` leads back to the floorplan. */
 export interface CircuitRegulators {
@@ -147,14 +148,19 @@ function circuitLoads(
 		floorplan.blocks,
 		(block) => (block.amps[mode.id] ?? 0) * corner.loadScale
 	);
+	const netVolts = nets.map(({ volts }) => volts);
+	const exponents = floorplan.blocks.map(({ voltageExponent }) => voltageExponent);
 	return {
 		count: loads.count,
 		node: loads.node,
 		groundNode: loads.groundNode,
 		block: loads.block,
 		nominalA: loads.share.map((share, load) => share * amps[loads.block[load]]),
-		volts: Float64Array.from(loads.node, (node) => nets[nodes.net[node]].volts),
-		exponent: Float64Array.from(loads.block, (block) => floorplan.blocks[block].voltageExponent)
+		volts: gather(
+			netVolts,
+			loads.node.map((node) => nodes.net[node])
+		),
+		exponent: gather(exponents, loads.block)
 	};
 }
 

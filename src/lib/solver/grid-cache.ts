@@ -1,4 +1,5 @@
 import type { Network } from '#lib/mesh/index.ts';
+import type { SecondThread } from '#lib/sparse/index.ts';
 import type { Circuit } from './circuit.ts';
 import { factorGrid, gridPattern, type FactorOutcome, type GridPattern } from './grid-factors.ts';
 
@@ -9,8 +10,15 @@ export interface GridCache {
 	factors(circuit: Circuit): FactorOutcome;
 }
 
-/** Keeps analyses and factors for the modes and corners of one network. */
-export function createGridCache(network: Network): GridCache {
+/**
+ * Keeps analyses and factors for the modes and corners of one network.
+ *
+ * @param secondThread shares the work on large nets
+ */
+export function createGridCache(
+	network: Network,
+	secondThread: SecondThread | null = null
+): GridCache {
 	const pattern = gridPattern(network);
 	const byCorner = new Map<string, FactorOutcome>();
 	return {
@@ -18,7 +26,7 @@ export function createGridCache(network: Network): GridCache {
 		factors(circuit) {
 			const kept = byCorner.get(circuit.corner.id);
 			if (kept !== undefined) return kept;
-			const made = factorGrid(pattern, circuit);
+			const made = factorGrid(pattern, circuit, secondThread);
 			byCorner.set(circuit.corner.id, made);
 			return made;
 		}

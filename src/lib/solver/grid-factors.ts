@@ -6,12 +6,15 @@ import {
 	orderNestedDissection,
 	planAssembly,
 	createPorts,
+	SECOND_THREAD_ROWS,
 	solveWith,
 	type AssemblyPlan,
 	type CholeskyFactor,
+	type SecondThread,
 	type SymbolicFactor
 } from '#lib/sparse/index.ts';
 import { heldNodes, type Circuit } from './circuit.ts';
+import { gather } from './gather.ts';
 
 /** The unknown voltages of one net. Held nodes are none: their columns go to the right-hand side. */
 interface NetPattern {
@@ -68,7 +71,8 @@ export type FactorOutcome =
 
 /** Connected parts by union-find with path halving. */
 function connectedParts(network: Network): Int32Array {
-	const part = Int32Array.from({ length: network.nodes.count }, (_, node) => node);
+	const part = new Int32Array(network.nodes.count);
+	for (let node = 0; node < part.length; node++) part[node] = node;
 	function root(node: number): number {
 		while (part[node] !== node) {
 			part[node] = part[part[node]];
@@ -85,39 +89,54 @@ function connectedParts(network: Network): Int32Array {
 	return part.map((_, node) => root(node));
 }
 
+/** Resistors of each net with so many held ends. */
+function resistorsByNet(
+	{ nets, nodes, resistors }: Network,
+	held: Uint8Array,
+	heldEnds: number
+): Int32Array[] {
+	const { count, from, to } = resistors;
+	const counts = new Int32Array(nets.length);
+	for (let r = 0; r < count; r++) {
+		if (held[from[r]] + held[to[r]] === heldEnds) counts[nodes.net[from[r]]]++;
+	}
+	const lists = Array.from(counts, (length) => new Int32Array(length));
+	counts.fill(0);
+	for (let r = 0; r < count; r++) {
+		const net = nodes.net[from[r]];
+		if (held[from[r]] + held[to[r]] === heldEnds) lists[net][counts[net]++] = r;
+	}
+	return lists;
+}
+
 /** The patterns of all nets: what `factorGrid` needs for any mode and corner. */
 export function gridPattern(network: Network): GridPattern {
 	const { nodes, resistors } = network;
 	const held = heldNodes(network);
 	const freeOf = new Int32Array(nodes.count).fill(-1);
 	const freeNodes = network.nets.map(({ firstNode, nodeCount }) => {
-		const free: number[] = [];
+		const free = new Int32Array(nodeCount);
+		let count = 0;
 		for (let node = firstNode; node < firstNode + nodeCount; node++) {
 			if (held[node] === 1) continue;
-			freeOf[node] = free.length;
-			free.push(node);
+			freeOf[node] = count;
+			free[count++] = node;
 		}
-		return Int32Array.from(free);
+		return free.slice(0, count);
 	});
-	const inner: number[][] = network.nets.map(() => []);
-	const border: number[][] = network.nets.map(() => []);
-	for (let r = 0; r < resistors.count; r++) {
-		const ends = held[resistors.from[r]] + held[resistors.to[r]];
-		const net = nodes.net[resistors.from[r]];
-		if (ends === 0) inner[net].push(r);
-		else if (ends === 1) border[net].push(r);
-	}
+	const inner = resistorsByNet(network, held, 0);
+	const border = resistorsByNet(network, held, 1);
 	const nets = network.nets.map((_, net): NetPattern => ({
 		node: freeNodes[net],
-		inner: Int32Array.from(inner[net]),
-		border: Int32Array.from(border[net]),
-		borderFree: Int32Array.from(border[net], (r) =>
+		inner: inner[net],
+		border: border[net],
+		borderFree: border[net].map((r) =>
 			Math.max(freeOf[resistors.from[r]], freeOf[resistors.to[r]])
 		),
 		plan: planAssembly(
 			freeNodes[net].length,
-			Int32Array.from(inner[net], (r) => freeOf[resistors.from[r]]),
-			Int32Array.from(inner[net], (r) => freeOf[resistors.to[r]])
+			inner[net].map((r) => freeOf[resistors.from[r]]),
+			inner[net].map((r) => freeOf[resistors.to[r]])
 		),
 		symbolic: null
 	}));
@@ -141,7 +160,11 @@ function sourceTies(circuit: Circuit): Float64Array {
 }
 
 /** Factors every net of a corner; enabled regulators count as regulating (see `createPortSolver`). */
-export function factorGrid(pattern: GridPattern, circuit: Circuit): FactorOutcome {
+export function factorGrid(
+	pattern: GridPattern,
+	circuit: Circuit,
+	secondThread: SecondThread | null
+): FactorOutcome {
 	const { network, freeOf, part } = pattern;
 	const ties = sourceTies(circuit);
 	const factors: (CholeskyFactor | null)[] = [];
@@ -150,16 +173,19 @@ export function factorGrid(pattern: GridPattern, circuit: Circuit): FactorOutcom
 			factors.push(null);
 			continue;
 		}
-		const conductance = Float64Array.from(net.inner, (r) => 1 / circuit.ohm[r]);
-		const tie = Float64Array.from(net.node, (node) => ties[node]);
-		net.border.forEach((r, index) => (tie[net.borderFree[index]] += 1 / circuit.ohm[r]));
+		const conductance = new Float64Array(net.inner.length);
+		for (let e = 0; e < conductance.length; e++) conductance[e] = 1 / circuit.ohm[net.inner[e]];
+		const tie = gather(ties, net.node);
+		net.border.forEach((r, e) => (tie[net.borderFree[e]] += 1 / circuit.ohm[r]));
 		const matrix = assembleLaplacian(net.plan, conductance, tie);
 		if (net.symbolic === null) {
-			const x = Float64Array.from(net.node, (node) => network.nodes.xNm[node]);
-			const y = Float64Array.from(net.node, (node) => network.nodes.yNm[node]);
+			const x = gather(network.nodes.xNm, net.node);
+			const y = gather(network.nodes.yNm, net.node);
 			net.symbolic = analyse(matrix, orderNestedDissection(matrix, x, y));
 		}
-		const outcome = factorise(net.symbolic, matrix);
+		const outcome = factorise(net.symbolic, matrix, {
+			secondThread: matrix.n >= SECOND_THREAD_ROWS ? secondThread : null
+		});
 		if (outcome.status === 'too-large') {
 			return { ...outcome, net: index };
 		}

@@ -1,5 +1,6 @@
 import type { Circuit } from './circuit.ts';
 import { seenRatio } from './capacity.ts';
+import { gather } from './gather.ts';
 import type { Unknowns } from './evaluation.ts';
 import type { GridFactors } from './grid-factors.ts';
 import { solveStage, type NewtonOptions, type NewtonResult } from './newton.ts';
@@ -13,9 +14,8 @@ const MAX_RESTARTS = 8;
 /** Every net at its nominal volts, no correction, and the given blocks' nodes near zero. */
 export function startingPoint(circuit: Circuit, collapsed: ReadonlySet<number>): Unknowns {
 	const { network, nominalV, loads, feeds } = circuit;
-	const voltage = Float64Array.from(network.nodes.net, (net) =>
-		network.nets[net].kind === 'ground' ? 0 : nominalV[net]
-	);
+	const startV = network.nets.map(({ kind }, net) => (kind === 'ground' ? 0 : nominalV[net]));
+	const voltage = gather(startV, network.nodes.net);
 	for (let load = 0; load < loads.count; load++) {
 		if (collapsed.has(loads.block[load])) {
 			voltage[loads.node[load]] = COLLAPSED_START * loads.volts[load];

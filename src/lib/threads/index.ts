@@ -1,1 +1,1 @@
-export { WorkerThread } from './worker-thread.ts';
+export { threadFor, WorkerThread } from './worker-thread.ts';

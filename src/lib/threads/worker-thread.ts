@@ -1,5 +1,6 @@
+import { availableParallelism } from 'node:os';
 import { Worker } from 'node:worker_threads';
-import type { SecondThread, ThreadTask } from '#lib/sparse/index.ts';
+import { SECOND_THREAD_ROWS, type SecondThread, type ThreadTask } from '#lib/sparse/index.ts';
 
 /** States of a task, in `control[0]`; the thread's answer is in `control[1]`. */
 const POSTED = 0;
@@ -43,4 +44,10 @@ export class WorkerThread implements SecondThread {
 	async stop(): Promise<void> {
 		await this.#worker.terminate();
 	}
+}
+
+/** A second thread for a network whose largest net has so many nodes, null where none would gain. */
+export function threadFor(largestNet: number): WorkerThread | null {
+	const isWorthIt = largestNet >= SECOND_THREAD_ROWS && availableParallelism() > 1;
+	return isWorthIt ? new WorkerThread() : null;
 }
