@@ -128,7 +128,8 @@ describe('services', () => {
 		insertFloorplan: 'called by createFloorplan and the demo',
 		addDemoFloorplan: 'asks through createFloorplan',
 		floorplanFile: 'asks through getFloorplan',
-		cancel: 'asks itself'
+		cancel: 'asks itself',
+		enqueueMissing: 'called by requestSolves, freeze and solveRevision'
 	};
 
 	it.each(acting.filter(({ id }) => !((id.split(' ')[1] ?? '') in OWN)))(

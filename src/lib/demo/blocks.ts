@@ -49,7 +49,7 @@ function warmSpot(random: () => number): BlockInput['spread'] {
 }
 
 /** Amperes to a millionth, so that the file stays readable. */
-function roundAmps(amps: number): number {
+export function roundAmps(amps: number): number {
 	return Math.round(amps * 1e6) / 1e6;
 }
 

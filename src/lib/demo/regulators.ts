@@ -17,6 +17,9 @@ const STORY: Readonly<Record<string, Partial<RegulatorInput>>> = {
 	dsp_3_5: { enabled: false }
 };
 
+/** The units that the story bends. */
+export const storyRegulators: readonly string[] = Object.keys(STORY);
+
 function onSite(um: number): number {
 	return Math.round(um / SITE_UM) * SITE_UM;
 }

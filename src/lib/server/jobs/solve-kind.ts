@@ -60,11 +60,12 @@ export function solveKind(runner: SolveRunner): JobKind<SolveInput, SolveAnswer>
 			}
 			return runner.run({ floorplan: row.document, documentHash, mode, corner }, signal, progress);
 		},
-		store: storeResult
+		store: keepResult
 	};
 }
 
-async function storeResult(
+/** Keeps what a solve found, binds it to the revisions that wait for it, and tells pages. */
+export async function keepResult(
 	db: Handle,
 	input: SolveInput,
 	{ file, maps }: SolveAnswer

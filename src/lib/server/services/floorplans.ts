@@ -77,12 +77,17 @@ export async function createFloorplan(
 	return created;
 }
 
-/** Stores a parsed document as a new floorplan of a project. */
+/**
+ * Stores a parsed document as a new floorplan of a project.
+ *
+ * @param at when it happened
+ */
 export async function insertFloorplan(
 	db: Handle,
 	actor: Actor,
 	projectId: string,
-	document: Floorplan
+	document: Floorplan,
+	at = new Date()
 ): Promise<string> {
 	const name = document.name ?? 'Untitled';
 	const [row] = await db
@@ -93,7 +98,9 @@ export async function insertFloorplan(
 			hash: hashFloorplan(document),
 			document,
 			createdBy: actor.userId,
-			updatedBy: actor.userId
+			createdAt: at,
+			updatedBy: actor.userId,
+			updatedAt: at
 		})
 		.returning({ id: floorplans.id });
 	await audit(db, {
