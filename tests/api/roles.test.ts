@@ -15,6 +15,7 @@ import { SOLVER_VERSION } from '#lib/solver/index.ts';
 import { routes, startApiServer, type ApiServer } from '../support/api-server.ts';
 import { createTestDatabase, type TestDatabase } from '../support/database.ts';
 import { addPerson, makeWorld, smallPlan, type Person, type World } from '../support/people.ts';
+import { solveAndKeep } from '../support/solve-and-keep.ts';
 import { solved } from '../support/solving.ts';
 
 let database: TestDatabase;
@@ -32,6 +33,9 @@ beforeAll(async () => {
 	server = await startApiServer(database.url);
 	world = await makeWorld(connection.db, plan);
 	others = await makeWorld(connection.db, plan);
+	for (const { id: mode } of solvedPlan.modes) {
+		await solveAndKeep(connection, world, solvedPlan, { mode });
+	}
 });
 
 afterAll(async () => {
@@ -125,10 +129,13 @@ async function waitingJob(): Promise<string> {
 	return waiting?.id ?? '';
 }
 
+/** Its results are kept, so that freezing it asks for no work. */
+const solvedPlan = { ...plan, name: 'Solved plan' };
+
 /** A revision of a floorplan of its own, frozen by the placer. */
 async function frozen(isInReview = false): Promise<{ id: string; hash: string }> {
 	const { actor } = world.members.placer;
-	const floorplanId = await insertFloorplan(connection.db, actor, world.projectId, plan);
+	const floorplanId = await insertFloorplan(connection.db, actor, world.projectId, solvedPlan);
 	const wanted = { baseVersion: 1, title: '', note: '' };
 	const { id, hash } = await freeze(connection.db, actor, floorplanId, wanted);
 	if (isInReview) await askReview(connection.db, actor, id, { note: '' });
@@ -343,7 +350,7 @@ const OPERATIONS: readonly Operation[] = [
 		allowed: DRAW,
 		call: async () => {
 			const { actor } = world.members.placer;
-			const id = await insertFloorplan(connection.db, actor, world.projectId, plan);
+			const id = await insertFloorplan(connection.db, actor, world.projectId, solvedPlan);
 			return { path: `/api/v1/floorplans/${id}/revisions`, body: { baseVersion: 1 } };
 		}
 	},

@@ -11,10 +11,11 @@ import { solved } from './solving.ts';
 /** Solves a plan here and keeps its result as the worker would; the result's id. */
 export async function solveAndKeep(
 	{ db, sql }: Connection,
-	{ projectId, floorplanId }: World,
-	plan: Floorplan
+	{ projectId, floorplanId }: Pick<World, 'projectId' | 'floorplanId'>,
+	plan: Floorplan,
+	conditions: { readonly mode?: string; readonly corner?: string } = {}
 ): Promise<string> {
-	const { network, point, result } = solved(plan);
+	const { network, point, result } = solved(plan, conditions);
 	const documentHash = hashFloorplan(plan);
 	const maps = network.nets.flatMap(({ id }) => {
 		const map = buildDropMap(plan, network, point, id);
