@@ -1,6 +1,6 @@
 import AxeBuilder from '@axe-core/playwright';
 import { expect, test, type Page } from '@playwright/test';
-import { openDemo, origin, signIn } from './people.ts';
+import { drawing, openDemo, origin, signIn } from './people.ts';
 
 async function violations(page: Page): Promise<string[]> {
 	const { violations: found } = await new AxeBuilder({ page }).analyze();
@@ -27,6 +27,23 @@ for (const theme of ['light', 'dark'] as const) {
 		await page.goto(`${origin()}/projects`);
 		await openDemo(page);
 		for (const tab of ['Reading', 'Properties', 'Layers']) {
+			await page.getByRole('tab', { name: new RegExp(`^${tab}`) }).click();
+			expect(await violations(page), tab).toEqual([]);
+		}
+	});
+
+	test(`no part of a review breaks a rule of axe in the ${theme} theme`, async ({ page }) => {
+		await page.addInitScript((value) => localStorage.setItem('manyweir-theme', value), theme);
+		await signIn(page, 'placer');
+		await openDemo(page);
+		await page.getByRole('button', { name: 'Freeze …' }).click();
+		await expect(page.getByRole('dialog')).toBeVisible();
+		expect(await violations(page), 'freeze').toEqual([]);
+		await page.goto(`${origin()}/projects`);
+		await page.locator('a[href^="/projects/"]').last().click();
+		await page.getByRole('link', { name: 'Revision 2' }).click();
+		await expect(drawing(page)).toBeVisible();
+		for (const tab of ['Review', 'Findings', 'Threads', 'Reading']) {
 			await page.getByRole('tab', { name: new RegExp(`^${tab}`) }).click();
 			expect(await violations(page), tab).toEqual([]);
 		}
