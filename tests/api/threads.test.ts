@@ -118,6 +118,18 @@ describe('UX-52: a thread', () => {
 		expect(anchors).toEqual([{ kind: 'plan' }, { kind: 'place', atUm: [12.5, 7] }]);
 	});
 
+	it.each([
+		['blocks', 'b1', [20, 20]],
+		['regulators', 'r1', [10, 10]],
+		['straps', plan.straps[0].id, [25, 25]],
+		['nets', 'vdd', null],
+		['modes', 'busy', null]
+	] as const)('on %s %s stands in its middle, or nowhere', async (list, id, atUm) => {
+		const anchor = { kind: 'item', list, id } as const;
+		const opened = await viewer.openThread({ floorplanId }, { anchor, text: 'Is this right?' });
+		expect(opened.anchor).toEqual({ kind: 'item', list, id, atUm, isPresent: true });
+	});
+
 	it('on an object that is not there is refused', async () => {
 		const anchor = { kind: 'item', list: 'regulators', id: 'nowhere' } as const;
 		expect(await statusOf(viewer.openThread({ floorplanId }, { anchor, text: 'So?' }))).toBe(422);
