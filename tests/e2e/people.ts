@@ -60,7 +60,7 @@ export async function choose(page: Page, what: 'Mode' | 'Corner', name: string):
 /** Opens a tab of the side panel. */
 export async function openPanel(
 	page: Page,
-	name: 'Reading' | 'Properties' | 'Layers'
+	name: 'Reading' | 'Properties' | 'Layers' | 'Review' | 'Findings' | 'Threads'
 ): Promise<void> {
 	await page.getByRole('tab', { name: new RegExp(`^${name}`) }).click();
 }
