@@ -49,12 +49,23 @@ function isOnPath(name) {
 	return (process.env.PATH ?? '').split(':').some((folder) => existsSync(join(folder, name)));
 }
 
+/** Folder of Debian's BLAS for several threads, or undefined. */
+export function openBlasFolder() {
+	return readdirSync('/usr/lib')
+		.map((name) => join('/usr/lib', name, 'openblas-pthread'))
+		.find((folder) => existsSync(folder));
+}
+
 /** Debian packages that the commands use, and how to see that one is there. */
 const DEBIAN = {
 	postgresql: () => postgresBinaries() !== undefined,
 	chromium: () => isOnPath('chromium'),
 	ngspice: () => isOnPath('ngspice'),
-	'python3-scipy': () => existsSync('/usr/lib/python3/dist-packages/scipy')
+	'python3-scipy': () => existsSync('/usr/lib/python3/dist-packages/scipy'),
+	'g++': () => isOnPath('g++'),
+	'libsuitesparse-dev': () => existsSync('/usr/include/suitesparse/cholmod.h'),
+	'libhypre-dev': () => existsSync('/usr/include/hypre/HYPRE.h') && isOnPath('mpicxx'),
+	'libopenblas0-pthread': () => openBlasFolder() !== undefined
 };
 
 /**
