@@ -62,11 +62,11 @@ export function printTable(machine, repeats, systems) {
 		`| ${cells.map((cell, k) => cell.padEnd(widths[k])).join(' | ')} |`;
 	console.log(`${machine.join('\n')}
 
-Median ms of ${repeats} (and the least), each in a fresh process, in turn. Counted: from the matrix in memory, in each
-one's own form, to an answer of a true relative residual of 1e-10 (ordering, analysis, factor or
-multigrid set-up, solution). Not counted: reading, building and dealing out the matrix, starting the
-process, checking the residual. Two threads each (CHOLMOD: of its BLAS; hypre: two processes) unless
-said otherwise; the given order is a nested dissection by coordinates, counted.
+Median ms of ${repeats} (and the least), each in a fresh process, in turn. Counted: from the matrix
+in memory, in each one's own form, to an answer of a true relative residual of 1e-10 (ordering,
+analysis, factor or multigrid set-up, solution). Not counted: reading, building and dealing out the
+matrix, starting the process, checking the residual. Two threads each (CHOLMOD: of its BLAS; hypre:
+two processes) unless said otherwise; the given order is a nested dissection by coordinates, counted.
 `);
 	console.log(asLine(header));
 	console.log(asLine(widths.map((width) => '-'.repeat(width))));
