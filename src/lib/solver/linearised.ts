@@ -4,12 +4,17 @@ import { solveGmres } from './gmres.ts';
 import type { PortSolver, Step } from './port-solver.ts';
 
 /**
- * Where the inner iteration ends, as a part of what the loads' slopes add: near the answer at the
- * mismatch itself, which keeps the outer iteration superlinear (Dembo, Eisenstat and Steihaug 1982);
- * far from it loosely, because the pieces still change.
+ * Where the inner iteration ends, as a part of what the loads' slopes add or of the mismatch,
+ * whichever is less: near the answer at the relative mismatch itself, which keeps the outer iteration
+ * superlinear (Dembo, Eisenstat and Steihaug 1982); far from it loosely, because the pieces still
+ * change. A part of the mismatch, because only then the step reduces it: where units are flat but for
+ * a small leak, the step without loads goes far, and the slopes of collapsed loads add to it many
+ * times the mismatch.
  */
 const LOOSEST_TOLERANCE = 1e-2;
 const TIGHTEST_TOLERANCE = 1e-6;
+/** What rounding lets the inner iteration reach, as a part of what the slopes add. */
+const ROUNDING_TOLERANCE = 1e-12;
 const RESTART = 40;
 const MAX_INNER = 200;
 
@@ -62,7 +67,9 @@ export function solveLinearised(
 	for (let node = 0; node < count; node++) right[node] = -right[node];
 	const answer = new Float64Array(count);
 	const answered: Step[] = [];
-	const tolerance = Math.min(Math.max(relative, TIGHTEST_TOLERANCE), LOOSEST_TOLERANCE);
+	const added = Math.sqrt(right.reduce((sum, amps) => sum + amps * amps, 0));
+	const forcing = Math.min(Math.max(relative, TIGHTEST_TOLERANCE), LOOSEST_TOLERANCE);
+	const tolerance = Math.max(forcing * Math.min(1, evaluation.merit / added), ROUNDING_TOLERANCE);
 	const { iterations, weights } = solveGmres(
 		(w, into) => {
 			const found = solver.solve(w, noTargets);
