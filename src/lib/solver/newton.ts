@@ -1,17 +1,11 @@
 import { firstBorder } from './border.ts';
 import type { Circuit } from './circuit.ts';
-import {
-	currentScale,
-	evaluate,
-	LOOP_HOLDING,
-	moved,
-	type Evaluation,
-	type Unknowns
-} from './evaluation.ts';
+import { currentScale, evaluate, moved, type Evaluation, type Unknowns } from './evaluation.ts';
 import type { GridFactors } from './grid-factors.ts';
-import { solveLinearised } from './linearised.ts';
+import { leaksOf } from './leaks.ts';
+import { looseLoops, newtonStep } from './newton-step.ts';
 import { createPortSolver, type PortSolver } from './port-solver.ts';
-import { isFlat, PIECE_REGULATING } from './regulator-law.ts';
+import { PIECE_REGULATING } from './regulator-law.ts';
 
 /** Where the iteration aims, relative to the load, and what it accepts where rounding stops it. */
 const TARGET_RELATIVE = 1e-12;
@@ -27,10 +21,8 @@ const LAST_STEPS = 5;
 const MAX_HALVINGS = 12;
 /** A line-search step must take this part of what a full step promises. */
 const SUFFICIENT = 1e-4;
-/** Slope lent to the units of a part that floats because all of them are flat. */
-const FLOATING_LEAK = 1e-4;
-/** The same as a part of the slope of the loads there. */
-const BESIDE_LOADS = 1e-3;
+/** What the mismatch may grow by while a part drifts to a border, which cannot take any of it away. */
+const DRIFT_RISE = 2;
 
 export interface NewtonOptions {
 	readonly onStep?: (step: number, relative: number) => void;
@@ -61,62 +53,17 @@ export interface NewtonResult {
 	readonly iterations: number;
 }
 
-/**
- * Leak of every unit. A part all of whose units are flat without a leak is lent a small one, which
- * says which way it drifts; where its loads have a slope of their own, one that is small beside it.
- */
-function leaksOf(
-	circuit: Circuit,
-	grid: GridFactors,
-	piece: Uint8Array,
-	leak: number,
-	loadSlope: Float64Array
-): Float64Array {
-	const { regulators: units, loads } = circuit;
-	const leaks = new Float64Array(units.count).fill(leak);
-	const firm = new Set<number>();
-	for (let k = 0; k < units.count; k++) {
-		if (!isFlat(piece[k])) firm.add(grid.part[units.outputNode[k]]);
-	}
-	const floating = Array.from(units.outputNode, (node) => !firm.has(grid.part[node]));
-	if (leak > 0 || !floating.includes(true)) return leaks;
-	const slopeOf = new Map<number, number>();
-	const unitSlopeOf = new Map<number, number>();
-	const add = (to: Map<number, number>, node: number, value: number) =>
-		to.set(grid.part[node], (to.get(grid.part[node]) ?? 0) + Math.abs(value));
-	loads.node.forEach((node, load) => add(slopeOf, node, loadSlope[load]));
-	units.outputNode.forEach((node, k) => add(unitSlopeOf, node, 1 / units.outputOhm[k]));
-	return leaks.map((_, k) => {
-		if (!floating[k]) return 0;
-		const part = grid.part[units.outputNode[k]];
-		const ratio = (slopeOf.get(part) ?? 0) / (unitSlopeOf.get(part) ?? 1);
-		if (ratio === 0) return FLOATING_LEAK;
-		// A power of ten, so that the equations are kept while the loads' slopes move a little.
-		return Math.min(FLOATING_LEAK, 10 ** Math.floor(Math.log10(BESIDE_LOADS * ratio)));
-	});
-}
-
-/** What each loop's equation has to take to zero, V. */
-function loopTargets(
-	circuit: Circuit,
-	unknowns: Unknowns,
-	errorV: Float64Array,
-	loop: Int8Array,
-	powerless: readonly boolean[]
-): Float64Array {
-	return errorV.map((error, s) => {
-		const { rangeV } = circuit.senses[s];
-		if (loop[s] !== LOOP_HOLDING) return loop[s] * rangeV - unknowns.correction[s];
-		return powerless[s] ? Math.sign(error) * rangeV - unknowns.correction[s] : error;
-	});
-}
-
 function relativeOf(circuit: Circuit, evaluation: Evaluation): number {
 	return evaluation.maxMismatchA / currentScale(circuit, evaluation);
 }
 
 function loopsWithin(evaluation: Evaluation, volts: number): boolean {
 	return evaluation.senseMismatchV.every((left) => Math.abs(left) <= volts);
+}
+
+/** Whether an iteration may end where rounding stops it: loops and a mismatch up to `limit`. */
+function isAcceptable(evaluation: Evaluation, relative: number, limit: number): boolean {
+	return relative <= limit && loopsWithin(evaluation, LOOP_ACCEPTED_V);
 }
 
 /**
@@ -155,9 +102,8 @@ export function solveStage(
 	/** Ends where rounding is all that is left. */
 	const finishAtBest = (): NewtonResult => {
 		({ unknowns, evaluation } = best);
-		const accepted =
-			relativeOf(circuit, evaluation) <= Math.max(target, ACCEPTED_RELATIVE) &&
-			loopsWithin(evaluation, LOOP_ACCEPTED_V);
+		const limit = Math.max(target, ACCEPTED_RELATIVE);
+		const accepted = isAcceptable(evaluation, relativeOf(circuit, evaluation), limit);
 		return finish(accepted ? 'converged' : 'stuck');
 	};
 
@@ -169,22 +115,19 @@ export function solveStage(
 		const allowance = relative <= ACCEPTED_RELATIVE ? LAST_STEPS : 0;
 		if (steps >= options.maxSteps + allowance) return finishAtBest();
 
-		const leak = leaksOf(circuit, grid, piece, stageLeak, evaluation.loadSlope);
+		const { loadSlope } = evaluation;
+		const { leaks, drifts } = leaksOf(circuit, grid, piece, stageLeak, loadSlope, pivoting);
 		const key = `${piece.join('')}|${loop.join('')}`;
-		const fullKey = `${key}|${leak.join(',')}`;
+		const fullKey = `${key}|${leaks.join(',')}`;
 		if (solver === null || solverKey !== fullKey) {
-			solver = createPortSolver(circuit, grid, piece, leak, loop);
+			solver = createPortSolver(circuit, grid, piece, leaks, loop);
 			if (solver === null) return finishAtBest();
 			solverKey = fullKey;
 		}
-		const { powerless } = solver;
-		const targets = loopTargets(circuit, unknowns, evaluation.senseErrorV, loop, powerless);
-		const { step, iterations: inner } = solveLinearised(
+		const { step, iterations: inner } = newtonStep(
 			circuit,
 			solver,
-			evaluation,
-			targets,
-			relative,
+			{ unknowns, evaluation, loop, relative },
 			options.shouldStop
 		);
 		steps++;
@@ -195,11 +138,13 @@ export function solveStage(
 		let trial = moved(unknowns, step, t);
 		let next = evaluate(circuit, trial, stageLeak);
 		// On a straight path the mismatch falls in proportion; there only bent loads can raise it, and
-		// a loop that no unit follows, whose error may grow while its correction goes to the end.
-		const loose = powerless.some((is, s) => is && loop[s] === LOOP_HOLDING);
+		// a loop that no unit follows, whose error may grow while its correction goes to the end. On a
+		// drift what is missing goes from place to place until a unit leaves its bound.
+		const isLoose = looseLoops(solver, loop).includes(true);
 		const allowed = () => {
 			if (!pivoting) return (1 - SUFFICIENT * t) * evaluation.merit;
-			return loose ? Infinity : evaluation.merit * (1 + 1e-9);
+			if (isLoose) return Infinity;
+			return evaluation.merit * (drifts ? DRIFT_RISE : 1 + 1e-9);
 		};
 		for (let h = 0; h < MAX_HALVINGS && t > 0 && next.merit > allowed(); h++) {
 			t /= 2;
@@ -207,7 +152,8 @@ export function solveStage(
 			next = evaluate(circuit, trial, stageLeak);
 		}
 		if (!pivoting && next.merit > allowed()) {
-			if (relative <= ACCEPTED_RELATIVE || options.onCycle === 'give-up') return finishAtBest();
+			const isDone = isAcceptable(evaluation, relative, ACCEPTED_RELATIVE);
+			if (isDone || options.onCycle === 'give-up') return finishAtBest();
 			pivoting = true;
 			continue;
 		}
@@ -215,7 +161,7 @@ export function solveStage(
 		unknowns = trial;
 		evaluation = next;
 		if (!pivoting) {
-			if (slow && relative <= ROUNDING_RELATIVE) return finishAtBest();
+			if (slow && isAcceptable(evaluation, relative, ROUNDING_RELATIVE)) return finishAtBest();
 			const found = `${evaluation.piece.join('')}|${evaluation.loop.join('')}`;
 			if (found !== key && seen.has(found)) {
 				if (options.onCycle === 'give-up') return finishAtBest();

@@ -122,3 +122,75 @@ it('nearly all units flat, and loads collapsed behind a weak rail', () => {
 	expect(new Set(answer.point.regulatorStates)).toEqual(new Set(['idle', 'limited', 'dropout']));
 	expect(answer.point.collapsedBlocks).toEqual([0, 2, 3, 4]);
 });
+
+it('all units at a bound, with little missing: the level drifts until one leaves its bound', () => {
+	const answer = proven(
+		strainedPlan({
+			sheetOhm: 0.01,
+			inputV: 1.05,
+			feedOhm: 0,
+			cell: { outputOhm: 0.001, onOhm: 0.3, maxA: 0.05, sinkA: 0.02 },
+			units: [
+				[60, 60, 'vin', 0.010000000000000009],
+				[60, 40, null, -0.04300000000000001],
+				[0, 30, null, -0.05600000000000001],
+				[60, 30, null, 0.0904],
+				[30, 50, 'vin', -0.044399999999999995],
+				[70, 50, null, 0.017199999999999993],
+				[50, 60, null, -0.0118],
+				[10, 70, 'vin', -0.08080000000000001]
+			],
+			loads: [
+				[60, 10],
+				[20, 20],
+				[60, 60]
+			],
+			loadA: 0.110088
+		})
+	);
+	expect(answer.point.regulatorStates.slice(0, 7)).toEqual(Array(7).fill('limited'));
+	// Seven units give 0.05 A each, the eighth what is left of 0.330264 A: it sinks.
+	expect(answer.ampsOf('r7')).toBeCloseTo(3 * 0.110088 - 7 * 0.05, 9);
+});
+
+it('a loop whose only unit drops out at the moment when the mean is at nominal goes up', () => {
+	const answer = proven(
+		strainedPlan({
+			sheetOhm: 0.01,
+			inputV: 1.05,
+			feedOhm: 0.2,
+			cell: { outputOhm: 0.5, onOhm: 0.01, maxA: 0.2, sinkA: 0.02 },
+			rangeV: 0.2,
+			units: [[20, 60, 'vin', 0]],
+			loads: [
+				[50, 40],
+				[20, 60],
+				[0, 10]
+			],
+			loadA: 0.060456,
+			exponent: 0.5
+		})
+	);
+	expect(answer.stateOf('r0')).toBe('dropout');
+	expect(answer.point.sense[0].state).toBe('at-range');
+	expect(answer.point.sense[0].correctionV).toBeCloseTo(0.2, 12);
+	expect(answer.point.sense[0].errorV).toBeGreaterThan(0);
+});
+
+it('currents that balance are no answer while the loop is beyond its range', () => {
+	const answer = proven(
+		strainedPlan({
+			sheetOhm: 0.001,
+			inputV: 1.2,
+			feedOhm: 0.01,
+			cell: { outputOhm: 0.5, onOhm: 0.01, maxA: 5, sinkA: 0.02 },
+			rangeV: 0.02,
+			units: [[20, 0, 'vin', -0.0092]],
+			loads: [[60, 0]],
+			loadA: 2.7126
+		})
+	);
+	expect(answer.point.sense[0].state).toBe('at-range');
+	expect(answer.point.sense[0].correctionV).toBeCloseTo(0.02, 12);
+	expect(answer.point.collapsedBlocks).toEqual([0]);
+});
