@@ -65,6 +65,7 @@ const DEBIAN = {
 	'g++': () => isOnPath('g++'),
 	'libsuitesparse-dev': () => existsSync('/usr/include/suitesparse/cholmod.h'),
 	'libhypre-dev': () => existsSync('/usr/include/hypre/HYPRE.h') && isOnPath('mpicxx'),
+	'libeigen3-dev': () => existsSync('/usr/include/eigen3'),
 	'libopenblas0-pthread': () => openBlasFolder() !== undefined
 };
 

@@ -15,6 +15,13 @@ import { OURS, printTable } from './table.mjs';
 
 const CASES = ['uniform', 'irregular', 'strong'];
 const SIZES = [62_000, 250_000, 1_000_000, 2_000_000];
+const PACKAGES = /** @type {const} */ ([
+	'g++',
+	'libsuitesparse-dev',
+	'libhypre-dev',
+	'libeigen3-dev',
+	'libopenblas0-pthread'
+]);
 const USAGE =
 	'bench:native -- [--sizes 62000,250000] [--cases uniform,irregular,strong] [--repeats 3] [--json]';
 
@@ -81,7 +88,7 @@ async function compareOn(folder, size, kind, repeats) {
 
 await runScript(async () => {
 	const { sizes, cases, repeats, json } = readArguments();
-	await requireDebian(['g++', 'libsuitesparse-dev', 'libhypre-dev', 'libopenblas0-pthread']);
+	await requireDebian(PACKAGES);
 	const folder = mkdtempSync(join(tmpdir(), 'bench-native-'));
 	try {
 		await buildProgram(folder);

@@ -1,7 +1,7 @@
 import { availableParallelism, cpus, totalmem } from 'node:os';
 import { run } from '../../../src/cli/run.mjs';
 
-const PACKAGES = ['libcholmod3', 'libhypre-dev', 'libopenblas0-pthread', 'g++'];
+const PACKAGES = ['libcholmod3', 'libhypre-dev', 'libeigen3-dev', 'libopenblas0-pthread', 'g++'];
 
 /**
  * The machine and the versions that a table of times belongs to.

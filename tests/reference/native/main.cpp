@@ -24,6 +24,7 @@ struct Method {
 const std::map<std::string, Method> METHODS = {
     {"cholmod-own-order", {false, [](const System &s) { return solveWithCholmod(s, false); }}},
     {"cholmod-given-order", {false, [](const System &s) { return solveWithCholmod(s, true); }}},
+    {"eigen", {false, [](const System &s) { return solveWithEigen(s); }}},
     {"hypre", {true, [](const System &s) { return solveWithHypre(s, 0); }}},
     {"hypre-aggressive", {true, [](const System &s) { return solveWithHypre(s, 1); }}}};
 

@@ -1,6 +1,7 @@
 #pragma once
 
 #include <string>
+#include <utility>
 #include <vector>
 
 #include "system.hpp"
@@ -24,3 +25,6 @@ Timing solveWithCholmod(const System &system, bool isGivenOrder);
  * die beforehand. Called on every rank; the answer is rank 0's.
  */
 Timing solveWithHypre(const System &system, int aggressiveLevels);
+
+/** Eigen's conjugate gradients with an incomplete Cholesky factor. */
+Timing solveWithEigen(const System &system);

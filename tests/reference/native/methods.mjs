@@ -43,8 +43,10 @@ export const METHODS = [
 		processes: 0,
 		env: ONE_THREAD
 	},
+	{ name: 'Eigen, 1 thread', argument: 'eigen', processes: 0, env: ONE_THREAD },
 	{ name: 'hypre', argument: 'hypre', processes: 2, env: ONE_THREAD },
-	{ name: 'hypre, aggressive', argument: 'hypre-aggressive', processes: 2, env: ONE_THREAD }
+	{ name: 'hypre, aggressive', argument: 'hypre-aggressive', processes: 2, env: ONE_THREAD },
+	{ name: 'the same, 1 process', argument: 'hypre-aggressive', processes: 1, env: ONE_THREAD }
 ];
 
 const program = (/** @type {string} */ folder) => join(folder, 'native');
@@ -59,7 +61,7 @@ export async function buildProgram(folder) {
 		'mpicxx',
 		[
 			...['-std=c++20', '-O3', '-march=native', '-pthread', '-DOMPI_SKIP_MPICXX'],
-			...['-isystem', '/usr/include/hypre'],
+			...['-isystem', '/usr/include/hypre', '-isystem', '/usr/include/eigen3'],
 			...sources.map((name) => join(SOURCES, name)),
 			...['-lcholmod', '-lHYPRE', '-o', program(folder)]
 		],
@@ -102,7 +104,9 @@ export async function timeMethod(folder, { argument, processes, env }, files) {
 		LD_LIBRARY_PATH: openBlasFolder() ?? '',
 		// In a container everybody may be root.
 		OMPI_ALLOW_RUN_AS_ROOT: '1',
-		OMPI_ALLOW_RUN_AS_ROOT_CONFIRM: '1'
+		OMPI_ALLOW_RUN_AS_ROOT_CONFIRM: '1',
+		// A process that waits for the other lets somebody else have its core meanwhile.
+		OMPI_MCA_mpi_yield_when_idle: '1'
 	});
 	return { nodes: line.nodes, ms: line.ms.total, residual: line.residual, peakMb: line.peakMb };
 }
