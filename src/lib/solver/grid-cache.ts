@@ -8,6 +8,8 @@ export interface GridCache {
 	readonly pattern: GridPattern;
 	/** The factors of the circuit's corner, made on first use. */
 	factors(circuit: Circuit): FactorOutcome;
+	/** Gives the factors' memory back; later ones are made anew. */
+	release(): void;
 }
 
 /**
@@ -29,6 +31,12 @@ export function createGridCache(
 			const made = factorGrid(pattern, circuit, secondThread);
 			byCorner.set(circuit.corner.id, made);
 			return made;
+		},
+		release() {
+			for (const outcome of byCorner.values()) {
+				if (outcome.status === 'factored') outcome.grid.release();
+			}
+			byCorner.clear();
 		}
 	};
 }

@@ -6,6 +6,7 @@ import {
 	orderNestedDissection,
 	planAssembly,
 	createPorts,
+	releaseFactor,
 	SECOND_THREAD_ROWS,
 	solveWith,
 	type AssemblyPlan,
@@ -55,6 +56,8 @@ export interface GridFactors {
 	solve(net: number, right: Float64Array, answer: Float64Array): void;
 	/** The net's answer to 1 A at a node. Kept, at the net's ports only. */
 	column(net: number, node: number): PortColumn;
+	/** Gives the factors' memory back: nothing of them may be used any more. */
+	release(): void;
 }
 
 export type FactorOutcome =
@@ -272,5 +275,9 @@ function gridOf(
 		return made;
 	}
 
-	return { part, solve, column };
+	function release(): void {
+		for (const factor of factors) if (factor !== null) releaseFactor(factor);
+	}
+
+	return { part, solve, column, release };
 }

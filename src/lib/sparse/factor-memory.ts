@@ -1,13 +1,13 @@
 import type { SymbolicFactor } from './analyse.ts';
 import {
 	bindKernels,
-	createMemory,
 	growMemory,
 	KERNEL_SIZES,
 	planSpace,
 	type KernelCall,
 	type Kernels
 } from './kernels.ts';
+import { giveBackMemory, takeMemory } from './memory-pool.ts';
 import type { Ranges, WorkSplit } from './work-split.ts';
 
 /** Stacks of update matrices of one thread, values. */
@@ -188,7 +188,7 @@ export function bindCalls(layout: FactorLayout, space: ThreadSpace): KernelCall[
 /** Makes the memory of a factor and copies the analysis there. */
 export function createFactorMemory(symbolic: SymbolicFactor, layout: FactorLayout): FactorMemory {
 	const isShared = layout.shared !== null;
-	const memory = createMemory(layout.bytes, isShared);
+	const memory = takeMemory(layout.bytes, isShared);
 	const { buffer } = memory;
 	const put = (at: number, values: Int32Array) =>
 		new Int32Array(buffer, at, values.length).set(values);
@@ -214,8 +214,8 @@ export function createFactorMemory(symbolic: SymbolicFactor, layout: FactorLayou
 }
 
 /**
- * Takes more bytes behind everything else, zero throughout, and returns where they start. Views of
- * the memory have to be made anew. Throws a RangeError where the memory cannot grow.
+ * Takes more bytes behind everything else, with anything in them, and returns where they start.
+ * Views of the memory have to be made anew. Throws a RangeError where the memory cannot grow.
  */
 export function extendMemory(space: FactorMemory, bytes: number): number {
 	const from = space.usedBytes;
@@ -223,6 +223,11 @@ export function extendMemory(space: FactorMemory, bytes: number): number {
 	if (missing > 0) growMemory(space.memory, missing);
 	space.usedBytes = Math.ceil((from + bytes) / 64) * 64;
 	return from;
+}
+
+/** Gives the memory back for other factors: nothing of this one may be used any more. */
+export function releaseFactorMemory({ memory, isShared }: FactorMemory): void {
+	giveBackMemory(memory, isShared);
 }
 
 /** Puts the children of every supernode into lists. */

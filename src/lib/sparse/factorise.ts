@@ -3,6 +3,7 @@ import {
 	bindCalls,
 	createFactorMemory,
 	layOut,
+	releaseFactorMemory,
 	type FactorMemory,
 	type SharedSpace,
 	type ThreadSpace
@@ -94,8 +95,16 @@ export function factorise(
 	const { memory, layout } = factor.space;
 	new Float64Array(memory.buffer, layout.values, length).set(matrix.value);
 	const failed = runFactorisation(factor);
-	if (failed !== -1) return { status: 'not-positive-definite', row: symbolic.perm[failed] };
+	if (failed !== -1) {
+		releaseFactor(factor);
+		return { status: 'not-positive-definite', row: symbolic.perm[failed] };
+	}
 	return { status: 'factorised', factor };
+}
+
+/** Gives a factor's memory back for others: it must not be used any more. */
+export function releaseFactor({ space }: CholeskyFactor): void {
+	releaseFactorMemory(space);
 }
 
 /** -1, or the column at which it failed. */

@@ -9,7 +9,7 @@ export { groupColumns } from './supernodes.ts';
 export type { SymbolicFactor } from './analyse.ts';
 export { analyse } from './analyse.ts';
 export type { CholeskyFactor, FactoriseOptions, FactoriseResult } from './factorise.ts';
-export { factorBytes, factorise, SECOND_THREAD_ROWS } from './factorise.ts';
+export { factorBytes, factorise, releaseFactor, SECOND_THREAD_ROWS } from './factorise.ts';
 export type { SecondThread, ThreadTask } from './second-thread.ts';
 export { solveWith } from './solve.ts';
 export { solveBlockWith } from './solve-block.ts';

@@ -12,9 +12,13 @@ import { factorisePlainly, lowerPanels } from '../../../tests/support/plain-chol
 import {
 	analyse,
 	assembleEntries,
+	createPorts,
 	factorise,
 	orderMinimumDegree,
 	orderNestedDissection,
+	relativeResidual,
+	releaseFactor,
+	solveBlockWith,
 	type EliminationOrder,
 	type SymmetricMatrix
 } from './index.ts';
@@ -119,5 +123,33 @@ describe('numeric kernels', () => {
 		const other = factorise(symbolic, second, { replaces: old });
 		if (other.status !== 'factorised') throw new Error(other.status);
 		expect(other.factor.space).not.toBe(old.space);
+	});
+
+	it('serve the next factor with the memory of a released one, whatever it held', () => {
+		const large = lattice(40, 40, (e) => 1 + (e % 3));
+		const matrix = assemble(large);
+		const first = factorOf(matrix, orderNestedDissection(matrix, large.x, large.y));
+		new Float64Array(first.space.memory.buffer).fill(NaN);
+		releaseFactor(first);
+		// Given back twice it is still one memory.
+		releaseFactor(first);
+		const graphs = [lattice(35, 37), lattice(12, 90, (e) => 1 + (e % 5))];
+		const factors = graphs.map((graph) => {
+			const other = assemble(graph);
+			return factorOf(other, orderNestedDissection(other, graph.x, graph.y));
+		});
+		expect(factors.some(({ space }) => space.memory === first.space.memory)).toBe(true);
+		expect(factors[0].space.memory).not.toBe(factors[1].space.memory);
+		factors.forEach((factor, k) => {
+			const other = assemble(graphs[k]);
+			const b = Float64Array.from({ length: other.n * 3 }, (_, i) => Math.sin(i));
+			const x = solveBlockWith(factor, b, 3);
+			const ports = createPorts(factor, [0, other.n - 1]);
+			for (let c = 0; c < 3; c++) {
+				const column = [c * other.n, (c + 1) * other.n] as const;
+				expect(relativeResidual(other, x.slice(...column), b.slice(...column))).toBeLessThan(1e-11);
+			}
+			expect(ports.at(0, 1)).toBeGreaterThan(0);
+		});
 	});
 });

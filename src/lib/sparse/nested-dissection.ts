@@ -1,6 +1,7 @@
 import type { EliminationOrder } from './elimination-order.ts';
-import { bindKernels, createMemory, KERNEL_SIZES, planSpace } from './kernels.ts';
+import { bindKernels, KERNEL_SIZES, planSpace } from './kernels.ts';
 import type { SymmetricMatrix } from './matrix.ts';
+import { giveBackMemory, takeMemory } from './memory-pool.ts';
 
 /**
  * Geometric nested dissection (A. George, SIAM J. Numer. Anal. 10 (1973) 345): each part is cut near
@@ -35,7 +36,7 @@ export function orderNestedDissection(
 	const startAt = space.take(4 * (n + 1));
 	const parentAt = space.take(4 * n);
 	const workAt = space.take(KERNEL_SIZES.dissectionBytesPerNode * n + KERNEL_SIZES.dissectionBytes);
-	const memory = createMemory(space.bytes, false);
+	const memory = takeMemory(space.bytes, false);
 	const { buffer } = memory;
 	new Int32Array(buffer, rowStartAt, n + 1).set(rowStart);
 	new Int32Array(buffer, columnAt, column.length).set(column);
@@ -54,9 +55,11 @@ export function orderNestedDissection(
 		parentAt,
 		workAt
 	);
-	return {
+	const order = {
 		perm: new Int32Array(buffer, orderAt, n).slice(),
 		start: new Int32Array(buffer, startAt, pieces + 1).slice(),
 		parent: new Int32Array(buffer, parentAt, pieces).slice()
 	};
+	giveBackMemory(memory, false);
+	return order;
 }

@@ -65,6 +65,9 @@ function refuse(message: string, problems: readonly ModelProblem[]): void {
 
 function mesh(floorplan: Floorplan, documentHash: string): MeshedPlan | null {
 	if (meshed?.documentHash === documentHash) return meshed;
+	// The plan before makes room for this one.
+	meshed?.cache.release();
+	meshed = undefined;
 	progress('mesh');
 	const begin = seconds();
 	const result = meshFloorplan(floorplan);
